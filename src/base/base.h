@@ -1,0 +1,24 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* base.h: what every room may rely on: start-up, version, BUG(). */
+#ifndef TERRACE_BASE_H
+#define TERRACE_BASE_H
+
+#include <stdbool.h>
+#include <stddef.h>
+#include <stdint.h>
+
+#define TERRACE_VERSION "0.1.0"
+#define TERRACE_PROGRAM "terrace " TERRACE_VERSION
+
+#define COUNT_OF(array) (sizeof(array) / sizeof((array)[0]))
+
+/* A broken promise between two rooms of this program: our bug, never the user's. Aborts. */
+#define BUG(what) base_bug(__FILE__, __LINE__, (what))
+
+/* Switches off GSL's aborting error handler. Call once at the start of a program (or of a test)
+ * that uses libterrace.a, before any other function. */
+void base_init(void);
+
+_Noreturn void base_bug(const char *file, int line, const char *what);
+
+#endif
