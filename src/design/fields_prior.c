@@ -1,0 +1,157 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* fields_prior.c: the rows of the field table that are read off the lists of curves and priors. */
+#include "design/fields_prior.h"
+
+#include <string.h>
+
+#include "design/fields_limits.h"
+#include "design/prior.h"
+
+const struct parameter parameter_control = {
+    .name = "control",
+    .role = ROLE_CONTROL,
+    .coordinate = COORDINATE_SELF,
+    .help = "mean (binary: logit) of a control off the curve",
+};
+
+const struct parameter parameter_sd = {
+    .name = "sd",
+    .variance = "variance",
+    .role = ROLE_RESIDUAL,
+    .coordinate = COORDINATE_LOG,
+    .positive = true,
+    .help = "residual standard deviation of a continuous endpoint",
+};
+
+/* Whether an earlier parameter of the list of all curves has the name of parameters[at] of curve c.
+ */
+static bool named_before(size_t c, size_t at)
+{
+    const char *name = curves[c]->parameters[at].name;
+
+    for (size_t k = 0; k <= c; k++)
+        for (size_t j = 0; curves[k]->parameters[j].name != NULL && (k < c || j < at); j++)
+            if (strcmp(curves[k]->parameters[j].name, name) == 0)
+                return true;
+    return false;
+}
+
+const struct parameter *parameter_any(size_t i)
+{
+    for (size_t c = 0; curves[c] != NULL; c++)
+        for (size_t j = 0; curves[c]->parameters[j].name != NULL; j++)
+            if (!named_before(c, j) && i-- == 0)
+                return &curves[c]->parameters[j];
+    if (i == 0)
+        return &parameter_control;
+    return i == 1 ? &parameter_sd : NULL;
+}
+
+const char *curve_word(const struct vocabulary *v, size_t i)
+{
+    (void)v;
+    return curves[i] == NULL ? NULL : curves[i]->key;
+}
+
+static bool family_rows(const struct vocabulary *v, const void *data, size_t i, struct field *out);
+
+static const struct field prior_field = {
+    .kind = FIELD_OBJECT,
+    .nested_from = family_rows,
+    .one_member = true,
+    .help = "a prior: one family with its numbers",
+    .shared = "prior",
+};
+
+/* The numbers of one family (`data`), then the cuts that any may carry. */
+static bool argument_rows(const struct vocabulary *v, const void *data, size_t i, struct field *out)
+{
+    static const struct field cuts[] = {
+        {.key = "above",
+         .kind = FIELD_NUMBER,
+         .low = -NUMBER_LIMIT,
+         .high = NUMBER_LIMIT,
+         .help = "lower cut of the prior, which is renormalised"},
+        {.key = "below",
+         .kind = FIELD_NUMBER,
+         .low = -NUMBER_LIMIT,
+         .high = NUMBER_LIMIT,
+         .help = "upper cut of the prior, which is renormalised"},
+    };
+    const struct prior_family *family = data;
+    size_t own = 0;
+
+    (void)v;
+    while (own < PRIOR_ARGS && family->args[own].key != NULL)
+        own++;
+    if (i >= own + 2)
+        return false;
+    if (i >= own) {
+        *out = cuts[i - own];
+        return true;
+    }
+    *out = (struct field){.key = family->args[i].key,
+                          .kind = FIELD_NUMBER,
+                          .required = true,
+                          .low = family->args[i].positive ? 0 : -NUMBER_LIMIT,
+                          .low_open = family->args[i].positive,
+                          .high = NUMBER_LIMIT,
+                          .help = family->args[i].help};
+    return true;
+}
+
+static bool family_rows(const struct vocabulary *v, const void *data, size_t i, struct field *out)
+{
+    const struct prior_family *family = prior_families[i];
+
+    (void)v;
+    (void)data;
+    if (family == NULL)
+        return false;
+    *out = (struct field){.key = family->key,
+                          .kind = FIELD_OBJECT,
+                          .nested_from = argument_rows,
+                          .data = family,
+                          .help = family->sentence};
+    return true;
+}
+
+bool prior_rows(const struct vocabulary *v, const void *data, size_t i, struct field *out)
+{
+    (void)v;
+    (void)data;
+    for (size_t p = 0;; p++) {
+        const struct parameter *parameter = parameter_any(p);
+        const char *name = NULL;
+
+        if (parameter == NULL)
+            return false;
+        if (i == 0)
+            name = parameter->name;
+        else if (i == 1)
+            name = parameter->variance;
+        if (name != NULL) {
+            *out = prior_field;
+            out->key = name;
+            out->help = parameter->help;
+            return true;
+        }
+        i -= parameter->variance == NULL ? 1 : 2;
+    }
+}
+
+bool parameter_rows(const struct vocabulary *v, const void *data, size_t i, struct field *out)
+{
+    const struct parameter *parameter = parameter_any(i);
+
+    (void)v;
+    (void)data;
+    if (parameter == NULL || parameter == &parameter_control)
+        return false; /* control and sd stand beside the parameters */
+    *out = (struct field){.key = parameter->name,
+                          .kind = FIELD_NUMBER,
+                          .low = -NUMBER_LIMIT,
+                          .high = NUMBER_LIMIT,
+                          .help = parameter->help};
+    return true;
+}
