@@ -1,0 +1,245 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* check_tables.c: the tables of a design in words. */
+#include <math.h>
+
+#include "base/number.h"
+#include "report/check_text.h"
+#include "report/check_words.h"
+#include "report/table.h"
+
+enum { PROBABILITY_DECIMALS = 3, SCENARIOS_A_TABLE = 4, BAND_STEPS = 100 };
+
+static void add_words(struct table *c, const struct text *s)
+{
+    table_cell(c, text_s(s));
+}
+
+static void add_number(struct table *c, double x)
+{
+    char s[NUMBER_CHARS];
+    table_cell(c, isnan(x) ? "–" : number_significant(s, x, 4));
+}
+
+static void add_header(struct table *c, const char *const *names, size_t n)
+{
+    for (size_t i = 0; i < n; i++) {
+        table_cell(c, names[i]);
+    }
+}
+
+void check_table_priors(struct text *out, const struct check_report *r)
+{
+    static const char *const names[] = {"parameter", "prior", "5%", "50%", "95%"};
+    static const double q[] = {0.05, 0.5, 0.95};
+    const struct model *m = &r->d->model;
+    struct table *c = table_new();
+    add_header(c, names, 5);
+    for (size_t i = 0; i < m->parameters; i++) {
+        const struct prior *p = &m->prior[i];
+        struct text s = TEXT_INIT;
+        say_prior(&s, p);
+        table_cell(c, m->parameter[i]->name);
+        add_words(c, &s);
+        text_release(&s);
+        for (size_t j = 0; j < 3; j++) {
+            bool known = !prior_is_fixed(p) && prior_is_computable(p);
+            add_number(c, known ? prior_quantile(p, q[j]) : NAN);
+        }
+    }
+    table_text(out, c);
+    table_free(c);
+}
+
+/* Decimals that show the narrowest band in a hundred steps. */
+static int band_decimals(const struct band *b, size_t n)
+{
+    double narrow = INFINITY;
+    for (size_t k = 0; k < n; k++) {
+        double width = b[k].q95 - b[k].q05;
+        narrow = width > 0 && width < narrow ? width : narrow;
+    }
+    return isfinite(narrow) ? number_decimals_for(narrow / BAND_STEPS, 2) : 2;
+}
+
+static void add_band(struct table *c, const struct band *b, int decimals)
+{
+    add_fixed(c, b->q05, decimals);
+    add_fixed(c, b->q50, decimals);
+    add_fixed(c, b->q95, decimals);
+}
+
+void check_table_responses(struct text *out, const struct check_report *r)
+{
+    const struct design *d = r->d;
+    bool gain = design_has_gain(d), binary = d->type == ENDPOINT_BINARY;
+    struct table *c = table_new();
+    table_cell(c, "level");
+    table_cell(c, binary ? "rate 5%" : "response 5%");
+    table_cell(c, "50%");
+    table_cell(c, "95%");
+    if (gain) {
+        table_cell(c, "gain 5%");
+        table_cell(c, "50%");
+        table_cell(c, "95%");
+    }
+    int dr = band_decimals(r->bands->response, d->levels);
+    int dg = band_decimals(r->bands->gain, d->levels);
+    for (size_t k = 0; k < d->levels; k++) {
+        table_cell(c, d->level[k].label);
+        add_band(c, &r->bands->response[k], dr);
+        if (gain) {
+            add_band(c, &r->bands->gain[k], dg);
+        }
+    }
+    table_text(out, c);
+    table_free(c);
+}
+
+static void add_prefixed(struct table *c, const char *prefix, const char *name)
+{
+    struct text s = TEXT_INIT;
+    text_addf(&s, "%s %s", prefix, name);
+    add_words(c, &s);
+    text_release(&s);
+}
+
+void check_table_targets(struct text *out, const struct check_report *r)
+{
+    const struct design *d = r->d;
+    struct table *c = table_new();
+    table_cell(c, "probability that it");
+    for (size_t i = 0; i < d->targets; i++) {
+        add_prefixed(c, "is", d->target[i].name);
+        add_prefixed(c, "meets", d->target[i].name);
+    }
+    for (size_t k = 0; k < d->levels; k++) {
+        table_cell(c, d->level[k].label);
+        for (size_t i = 0; i < d->targets; i++) {
+            bool active = design_is_active(d, k);
+            add_fixed(c, active ? r->prior->level[k].pr_target[i] : NAN,
+                           PROBABILITY_DECIMALS);
+            add_fixed(c, active ? r->prior->level[k].pr_meets[i] : NAN, PROBABILITY_DECIMALS);
+        }
+    }
+    table_cell(c, "none");
+    for (size_t i = 0; i < d->targets; i++) {
+        add_fixed(c, r->prior->target[i].pr_none, PROBABILITY_DECIMALS);
+        table_cell(c, "");
+    }
+    table_text(out, c);
+    table_free(c);
+}
+
+static void add_cut(struct table *c, const struct expected_cut *cut, bool failure)
+{
+    if (!cut->held) {
+        table_cell(c, "not held");
+        for (int i = 0; i < 4; i++) {
+            table_cell(c, "");
+        }
+        return;
+    }
+    add_fixed(c, cut->time, 1);
+    add_fixed(c, cut->randomized, 0);
+    add_fixed(c, cut->observed, 0);
+    add_fixed(c, cut->pending, 0);
+    add_fixed(c, failure ? NAN : cut->dropped, 0);
+}
+
+static void add_cut_name(struct table *c, const struct design *d, size_t i)
+{
+    struct text s = TEXT_INIT;
+    text_addf(&s, "%zu, at ", i + 1);
+    say_point(&s, d, d->analyses.at[i]);
+    add_words(c, &s);
+    text_release(&s);
+}
+
+void check_table_expected(struct text *out, const struct check_report *r)
+{
+    const struct expected *x = r->expected;
+    bool failure = r->d->dropped == DROPPED_FAILURE;
+    struct table *c = table_new();
+    table_cell(c, "expected at analysis");
+    table_cell(c, r->d->time_unit);
+    table_cell(c, "randomized");
+    table_cell(c, "observed");
+    table_cell(c, "pending");
+    table_cell(c, "dropped");
+    bool delayed = false;
+    for (size_t i = 0; i < x->count; i++) {
+        add_cut_name(c, r->d, i);
+        add_cut(c, &x->cut[i], failure);
+        delayed = delayed || x->cut[i].delayed;
+    }
+    table_cell(c, "last");
+    add_cut(c, &x->last, failure);
+    table_text(out, c);
+    table_free(c);
+    if (delayed) {
+        text_add(out, "  Some cuts wait until the previous decision is in force.\n");
+    }
+    if (isfinite(x->adapts_from)) {
+        char s[NUMBER_CHARS];
+        text_addf(out, "  Adapted shares are expected in force from %s %s on.\n", r->d->time_unit,
+                  number_fixed(s, x->adapts_from, 1));
+    }
+}
+
+/* "0.8 (+0.3)": the true response and, in brackets, the true gain. */
+static void add_truth(struct table *c, const struct design *d, const struct scenario *s, size_t k)
+{
+    if (!s->response) {
+        table_cell(c, "from the prior");
+        return;
+    }
+    char x[NUMBER_CHARS], g[NUMBER_CHARS];
+    struct text cell = TEXT_INIT;
+    text_add(&cell, number_significant(x, s->response[k], 4));
+    double gain = expected_gain(d, s->response, k);
+    if (!isnan(gain)) {
+        text_addf(&cell, " (%s%s)", gain > 0 ? "+" : "", number_significant(g, gain, 3));
+    }
+    add_words(c, &cell);
+    text_release(&cell);
+}
+
+static void scenario_table(struct text *out, const struct design *d, size_t from, size_t to)
+{
+    struct table *c = table_new();
+    table_cell(c, design_has_gain(d) ? "true response (gain)" : "true response");
+    for (size_t i = from; i < to; i++) {
+        table_cell(c, d->scenario[i].name);
+    }
+    for (size_t k = 0; k < d->levels; k++) {
+        table_cell(c, d->level[k].label);
+        for (size_t i = from; i < to; i++) {
+            add_truth(c, d, &d->scenario[i], k);
+        }
+    }
+    for (size_t t = 0; t < d->targets; t++) {
+        add_prefixed(c, "true", d->target[t].name);
+        for (size_t i = from; i < to; i++) {
+            const double *m = d->scenario[i].response;
+            int level = m ? analysis_true_level(d, t, m) : LEVEL_NONE;
+            table_cell(c, !m ? "varies" : level < 0 ? "none" : d->level[level].label);
+        }
+    }
+    table_cell(c, "for error rates");
+    for (size_t i = from; i < to; i++) {
+        table_cell(c, d->scenario[i].is_null ? "null" : "");
+    }
+    table_text(out, c);
+    table_free(c);
+}
+
+void check_table_scenarios(struct text *out, const struct check_report *r)
+{
+    const struct design *d = r->d;
+    for (size_t from = 0; from < d->scenarios; from += SCENARIOS_A_TABLE) {
+        size_t to =
+            from + SCENARIOS_A_TABLE < d->scenarios ? from + SCENARIOS_A_TABLE : d->scenarios;
+        text_add(out, from ? "\n" : "");
+        scenario_table(out, d, from, to);
+    }
+}
