@@ -19,7 +19,7 @@
 #define MSG_KEY "unknown key \"%s\"; known here: %s"
 #define MSG_KEY_NEAR "unknown key \"%s\"; did you mean \"%s\"?"
 #define MSG_MISSING "\"%s\" is missing: %s"
-#define MSG_COUNT "has %zu entries; it must have %s"
+#define MSG_COUNT "the number of entries is %zu; it must be %s"
 #define MSG_ONE_OF "exactly one of %s must be given, not %s"
 
 /* Levels. */
@@ -73,7 +73,7 @@
 #define MSG_BINDING "only stop_futility can be non-binding; %s always binds"
 
 /* Allocation. */
-#define MSG_PER_LEVEL "has %zu entries; one for each of the %zu levels is needed"
+#define MSG_PER_LEVEL "the number of entries is %zu; one for each of the %zu levels is needed"
 #define MSG_BLOCK "block %s must be 1 or a multiple of the ratio's sum, %s"
 #define MSG_START "%s per level for %zu levels is more than the %s subjects"
 #define MSG_LEAST_SUM \
@@ -115,7 +115,7 @@
 #define MSG_LATER_ORDER "this version cannot analyze ndlm of order 2; use order 1"
 #define MSG_LATER_OFF_CURVE \
     "this version cannot analyze a control off the curve; leave control_on_curve out"
-#define MSG_LATER_FAMILY "this version cannot analyze a %s prior; it can: %s"
+#define MSG_LATER_FAMILY "this version cannot analyze a prior of family %s; it can: %s"
 #define MSG_LATER_TRUNCATED "this version cannot analyze a prior cut off by above or below"
 #define MSG_LATER_LINEAR "this version needs a normal or fixed prior for \"%s\", not %s"
 #define MSG_LATER_SENSITIVITY "this version cannot refit sensitivity models; leave them out"

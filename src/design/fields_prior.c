@@ -36,15 +36,27 @@ static bool named_before(size_t c, size_t at)
     return false;
 }
 
-const struct parameter *parameter_any(size_t i)
+/* A walk through the parameters of all curves, each name once, then `control` and `sd`. */
+struct walk {
+    size_t curve, at, extra;
+};
+
+static const struct parameter *walk_next(struct walk *w)
 {
-    for (size_t c = 0; curves[c] != NULL; c++)
-        for (size_t j = 0; curves[c]->parameters[j].name != NULL; j++)
-            if (!named_before(c, j) && i-- == 0)
-                return &curves[c]->parameters[j];
-    if (i == 0)
+    while (curves[w->curve] != NULL) {
+        const struct parameter *p = &curves[w->curve]->parameters[w->at];
+
+        if (p->name == NULL) {
+            w->curve++;
+            w->at = 0;
+        } else if (!named_before(w->curve, w->at++)) {
+            return p;
+        }
+    }
+    w->extra++;
+    if (w->extra == 1)
         return &parameter_control;
-    return i == 1 ? &parameter_sd : NULL;
+    return w->extra == 2 ? &parameter_sd : NULL;
 }
 
 const char *curve_word(const struct vocabulary *v, size_t i)
@@ -118,40 +130,41 @@ static bool family_rows(const struct vocabulary *v, const void *data, size_t i, 
 
 bool prior_rows(const struct vocabulary *v, const void *data, size_t i, struct field *out)
 {
+    struct walk w = {0, 0, 0};
+    const struct parameter *p;
+
     (void)v;
     (void)data;
-    for (size_t p = 0;; p++) {
-        const struct parameter *parameter = parameter_any(p);
-        const char *name = NULL;
+    while ((p = walk_next(&w)) != NULL) {
+        const char *names[] = {p->name, p->variance};
+        const size_t count = p->variance == NULL ? 1 : 2;
 
-        if (parameter == NULL)
-            return false;
-        if (i == 0)
-            name = parameter->name;
-        else if (i == 1)
-            name = parameter->variance;
-        if (name != NULL) {
+        if (i < count) {
             *out = prior_field;
-            out->key = name;
-            out->help = parameter->help;
+            out->key = names[i];
+            out->help = p->help;
             return true;
         }
-        i -= parameter->variance == NULL ? 1 : 2;
+        i -= count;
     }
+    return false;
 }
 
 bool parameter_rows(const struct vocabulary *v, const void *data, size_t i, struct field *out)
 {
-    const struct parameter *parameter = parameter_any(i);
+    struct walk w = {0, 0, 0};
+    const struct parameter *p = walk_next(&w);
 
     (void)v;
     (void)data;
-    if (parameter == NULL || parameter == &parameter_control)
-        return false; /* control and sd stand beside the parameters */
-    *out = (struct field){.key = parameter->name,
+    while (i-- > 0 && p != NULL)
+        p = walk_next(&w);
+    if (p == NULL || p == &parameter_control || p == &parameter_sd)
+        return false; /* these two stand beside the parameters */
+    *out = (struct field){.key = p->name,
                           .kind = FIELD_NUMBER,
                           .low = -NUMBER_LIMIT,
                           .high = NUMBER_LIMIT,
-                          .help = parameter->help};
+                          .help = p->help};
     return true;
 }
