@@ -52,7 +52,7 @@
         .kind = FIELD_END \
     }
 
-enum { LONG_LIST = 100000 };
+enum { LONG_LIST = 10000 };
 
 const char *const field_reserved[] = {"any", "best", "none", NULL};
 
@@ -440,7 +440,7 @@ static const struct field root_rows[] = {
            .help = "arrivals"),
     OBJECT("dropout", dropout_rows, .fallback = "{\"fraction\": 0}", .shared = "dropout",
            .help = "loss to follow-up"),
-    LIST("scenarios", scenario_row, 0, 65535, .when = "needed by simulate", .fallback = "[]",
+    LIST("scenarios", scenario_row, 0, 10000, .when = "needed by simulate", .fallback = "[]",
          .help = "truths to be simulated"),
     OBJECT("simulation", simulation_rows, .fallback = "{}", .help = "the simulation"),
     OBJECT("mcmc", mcmc_rows, .fallback = "{}", .help = "posterior draws"),

@@ -189,6 +189,11 @@ static void check_support(struct reader *r, cJSON *tree, struct model *m, const 
             continue;
         reader_at(r, "%s/priors/%s", where, item->string);
         check_positive(r, m->parameter[at], &m->prior[at], item->string);
+        if (prior_is_fixed(&m->prior[at]) && m->prior[at].on_variance) {
+            /* a known variance is a known standard deviation: nobody downstream need ask */
+            m->prior[at].arg[0] = sqrt(fmax(m->prior[at].arg[0], 0));
+            m->prior[at].on_variance = false;
+        }
     }
 }
 

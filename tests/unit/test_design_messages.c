@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* test_design_messages.c: every message a design can earn is earned by one malformed design, with the
- * words and the place that stand beside it, and no two of them earn the same. */
+/* test_design_messages.c: every message a design can earn is earned by one malformed design, with
+ * the words and the place that stand beside it, and no two of them earn the same. */
 #include <CUnit/CUnit.h>
 
 #include "analysis/vocabulary_rows.h"
@@ -206,18 +206,27 @@ static void all_faults_in_one_run(void)
 {
     static const char text[] =
         "{\"terrace\": 2, \"title\": \"\", \"subjects\": 10, \"seed\": -1, \"extra\": 0,\n"
-        " \"levels\": {\"list\": [{\"label\": \"a\", \"value\": 1}, {\"label\": \"a\", \"value\": 0}]},\n"
+        " \"levels\": {\"list\": [{\"label\": \"a\", \"value\": 1}, {\"label\": \"a\", \"value\": "
+        "0}]},\n"
         " \"endpoint\": {\"name\": \"x\", \"type\": \"binary\", \"better\": \"higher\"},\n"
         " \"model\": {\"curve\": \"emax\", \"shift\": 2},\n"
         " \"targets\": {\"t\": {\"rule\": \"optimal\", \"effect\": 0}},\n"
         " \"allocation\": {\"ratio\": [1, 2, 3]}}";
-    static const char *const places[] = {
-        "/terrace", "/title", "/seed", "/extra", "/levels/list/1/value", "/levels/list/1/label",
-        "/model/shift", "/targets/t/effect", "/targets/t/effect", "/allocation/ratio"};
+    static const char *const places[] = {"/terrace",
+                                         "/title",
+                                         "/seed",
+                                         "/extra",
+                                         "/levels/list/1/value",
+                                         "/levels/list/1/label",
+                                         "/model/shift",
+                                         "/targets/t/effect",
+                                         "/targets/t/effect",
+                                         "/allocation/ratio"};
     struct err e = ERR_INIT;
     struct design *d;
 
-    CU_ASSERT_EQUAL(design_parse(&d, text, strlen(text), "x", &terrace_vocabulary, &e), STATUS_INPUT);
+    CU_ASSERT_EQUAL(design_parse(&d, text, strlen(text), "x", &terrace_vocabulary, &e),
+                    STATUS_INPUT);
     CU_ASSERT_PTR_NULL(d);
     CU_ASSERT_EQUAL(e.count, sizeof places / sizeof places[0]);
     for (size_t i = 0; i < sizeof places / sizeof places[0]; i++) {
@@ -234,8 +243,9 @@ static void all_faults_in_one_run(void)
 
 static const struct unit_test tests[] = {
     {"each message is earned by one malformed design", one_design_one_message},
-    {"all faults of a design in one run, and no more", all_faults_in_one_run},
-    UNIT_END};
+    {"all faults of a design in one run, and no more", all_faults_in_one_run },
+    UNIT_END
+};
 
 int main(void)
 {

@@ -149,16 +149,18 @@ static bool elements_fit(const cJSON *root, const cJSON *schema, const cJSON *it
 
 static bool keyword_fits(const cJSON *root, const cJSON *word, const cJSON *item)
 {
-    static const char *const silent[] = {"$schema", "$comment",     "$defs",         "title", "default",
-                                         "description", "properties", "additionalProperties",
-                                         "propertyNames", NULL};
+    static const char *const silent[] = {
+        "$schema",       "$comment",    "$defs",      "title",
+        "default",       "description", "properties", "additionalProperties",
+        "propertyNames", NULL};
     const char *key = word->string;
 
     for (size_t i = 0; silent[i] != NULL; i++)
         if (strcmp(key, silent[i]) == 0)
             return true; /* says nothing, or is read by members_fit */
     if (strcmp(key, "$ref") == 0)
-        return valid(root, json_member(json_member(root, "$defs"), strrchr(word->valuestring, '/') + 1),
+        return valid(root,
+                     json_member(json_member(root, "$defs"), strrchr(word->valuestring, '/') + 1),
                      item);
     if (strcmp(key, "type") == 0)
         return is_type(word->valuestring, item);
@@ -355,13 +357,41 @@ static void try_json(const struct bench *b, const char *json)
 
 static void try_types(const struct bench *b)
 {
-    static const char *const values[] = {
-        "null",     "true",         "\"\"",    "\"any\"",  "\"none\"", "\"a\\nb\"", "\"a\\n\"",
-        "\"\\u0080\"", "\"\\u00a0\"", "\"n/2N\"", "\"as_largest\"", "-1", "0",        "0.3",
-        "1",        "2",            "8",       "200.5",    "1e7",      "1e99",      "1e101",
-        "-1e101",   "1e-300",       "[]",      "[1]",      "[1, 2]",   "[\"a\", 2]", "[null, null]",
-        "{}",       "{\"note\": \"x\"}", "{\"note\": 1}", "{\"\": 1}", "{\"a\\tb\": 0.5}",
-        "{\"all\": [], \"any\": []}", "{\"all\": [], \"measure\": \"pr_gain\"}"};
+    static const char *const values[] = {"null",
+                                         "true",
+                                         "\"\"",
+                                         "\"any\"",
+                                         "\"none\"",
+                                         "\"a\\nb\"",
+                                         "\"a\\n\"",
+                                         "\"\\u0080\"",
+                                         "\"\\u00a0\"",
+                                         "\"n/2N\"",
+                                         "\"as_largest\"",
+                                         "-1",
+                                         "0",
+                                         "0.3",
+                                         "1",
+                                         "2",
+                                         "8",
+                                         "200.5",
+                                         "1e7",
+                                         "1e99",
+                                         "1e101",
+                                         "-1e101",
+                                         "1e-300",
+                                         "[]",
+                                         "[1]",
+                                         "[1, 2]",
+                                         "[\"a\", 2]",
+                                         "[null, null]",
+                                         "{}",
+                                         "{\"note\": \"x\"}",
+                                         "{\"note\": 1}",
+                                         "{\"\": 1}",
+                                         "{\"a\\tb\": 0.5}",
+                                         "{\"all\": [], \"any\": []}",
+                                         "{\"all\": [], \"measure\": \"pr_gain\"}"};
 
     for (size_t i = 0; i < sizeof values / sizeof values[0]; i++)
         try_json(b, values[i]);
@@ -496,11 +526,12 @@ static void comment_names_rules(void)
 }
 
 static const struct unit_test tests[] = {
-    {"good and malformed designs are judged alike", whole_files},
-    {"every row of the table is judged alike", every_row},
-    {"defaults are allowed values", fallbacks},
-    {"the comment names the rules of the parser", comment_names_rules},
-    UNIT_END};
+    {"good and malformed designs are judged alike", whole_files        },
+    {"every row of the table is judged alike",      every_row          },
+    {"defaults are allowed values",                 fallbacks          },
+    {"the comment names the rules of the parser",   comment_names_rules},
+    UNIT_END
+};
 
 int main(void)
 {
