@@ -21,6 +21,19 @@ static void add_people(struct text *out, double n, const char *one, const char *
     text_addf(out, " %s", n == 1 ? one : many);
 }
 
+/* In running text "less than 0.001", not "<0.001". */
+static void add_probability(struct text *out, double p, struct digits g)
+{
+    struct text shown = TEXT_INIT;
+    figure_probability(&shown, p, g);
+    const char *s = text_s(&shown);
+    if (s[0] == '<' || s[0] == '>')
+        text_addf(out, "%s %s", s[0] == '<' ? "less than" : "more than", s + 1);
+    else
+        text_add(out, s);
+    text_release(&shown);
+}
+
 /* A sentence of a table row begins in lower case where it follows others; at the start of a
  * sentence its first letter is raised (ASCII only: the rows are ours). */
 static void raise_from(struct text *t, size_t start)
@@ -122,7 +135,7 @@ static void add_outcome(struct text *out, const struct analysis_report *r,
 {
     c->measure->sentence(c, r->d, out);
     text_add(out, " is ");
-    figure_probability(out, x->value, digits_condition(c, x));
+    add_probability(out, x->value, digits_condition(c, x));
     if (x->level >= 0 && c->level != x->level)
         text_addf(out, " (at %s)", r->d->level[x->level].label);
     text_add(out, c->above ? "; it has to be above " : "; it has to be below ");
@@ -231,7 +244,7 @@ static void add_runner_up(struct text *out, const struct analysis_report *r, siz
     if (next < 0)
         return;
     text_addf(out, " Next comes %s with ", r->d->level[next].label);
-    figure_probability(out, r->a->level[next].pr_target[target], digits_target(r));
+    add_probability(out, r->a->level[next].pr_target[target], digits_target(r));
     text_add(out, r->a->target[target].close
                       ? "; the two cannot be told apart within Monte Carlo error."
                       : ".");
@@ -243,17 +256,17 @@ void words_selection(struct text *out, const struct analysis_report *r, size_t t
     const char *name = r->d->target[target].name;
     if (x->selected < 0) {
         text_addf(out, "%s: no level is selected; the probability that none qualifies is ", name);
-        figure_probability(out, x->pr_none, digits_target(r));
+        add_probability(out, x->pr_none, digits_target(r));
         text_add(out, ".");
         return;
     }
     text_addf(out, "%s: %s is selected, and is the target with probability ", name,
               r->d->level[x->selected].label);
-    figure_probability(out, x->pr_selected, digits_target(r));
+    add_probability(out, x->pr_selected, digits_target(r));
     text_add(out, " (Monte Carlo error ");
     figure_error(out, x->mcse);
     text_add(out, "); that no level qualifies has probability ");
-    figure_probability(out, x->pr_none, digits_target(r));
+    add_probability(out, x->pr_none, digits_target(r));
     text_add(out, ".");
     add_runner_up(out, r, target);
 }
