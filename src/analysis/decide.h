@@ -1,0 +1,29 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* decide.h: from measures to conditions, decisions and a recommendation.
+ *
+ * Every decision is evaluated at every analysis; it acts only where it applies. At an interim
+ * analysis those apply whose `from` and `min_observed` are reached; at the last one only `final`
+ * does. Thread-safe for different outputs and judgements.
+ */
+#ifndef TERRACE_DECIDE_H
+#define TERRACE_DECIDE_H
+
+#include <stdbool.h>
+
+#include "analysis/analysis.h"
+#include "analysis/judge.h"
+
+/* Fills out->decision, out->final_success and out->recommendation (as if trusted). */
+void decide(struct analysis *out, const struct judgement *j, const struct analysis_request *r);
+
+/* Whether a join of conditions holds. */
+bool decide_joined(const struct conditions *when, const struct condition_result *x);
+
+/* Calls `each` for every condition with its result, in order, those of `final` last; stops where it
+ * returns false, and returns false then. */
+bool decide_each(const struct analysis *a, const struct design *d,
+                 bool (*each)(const struct condition *c, const struct condition_result *x,
+                              void *context),
+                 void *context);
+
+#endif

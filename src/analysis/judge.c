@@ -1,0 +1,185 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* judge.c: what a set of posterior draws says of every target. */
+#include "analysis/judge.h"
+
+#include <math.h>
+#include <string.h>
+
+#include "analysis/indicators.h"
+#include "base/mem.h"
+#include "posterior/diagnostics.h"
+
+struct judgement *judgement_new(const struct design *d)
+{
+    struct judgement *j = mem_new(1, sizeof *j);
+    const size_t cells = d->targets * d->levels;
+    j->d = d;
+    j->share = 1;
+    j->threads = 1;
+    j->open = mem_new(d->levels, sizeof *j->open);
+    double **by_cell[] = {&j->pr_target, &j->pr_meets, &j->mcse_target, &j->mcse_meets,
+                          &j->ess_target};
+    for (size_t i = 0; i < sizeof by_cell / sizeof *by_cell; i++)
+        *by_cell[i] = mem_new(cells, sizeof(double));
+    double **by_target[] = {&j->pr_none, &j->mcse_none, &j->ess_none};
+    for (size_t i = 0; i < sizeof by_target / sizeof *by_target; i++)
+        *by_target[i] = mem_new(d->targets, sizeof(double));
+    j->selected = mem_new(d->targets, sizeof *j->selected);
+    j->close = mem_new(d->targets, sizeof *j->close);
+    j->pr_positive = mem_new(d->levels, sizeof(double));
+    j->mcse_positive = mem_new(d->levels, sizeof(double));
+    j->tally = tally_new(d);
+    j->level = mem_new(1, sizeof *j->level);
+    judgement_open(j, NULL);
+    return j;
+}
+
+void judgement_free(struct judgement *j)
+{
+    if (!j)
+        return;
+    void *owned[] = {j->open,       j->pr_target,   j->pr_meets,      j->mcse_target, j->mcse_meets,
+                     j->ess_target, j->pr_none,     j->mcse_none,     j->ess_none,    j->selected,
+                     j->close,      j->pr_positive, j->mcse_positive, j->work,        j->level};
+    for (size_t i = 0; i < sizeof owned / sizeof *owned; i++)
+        mem_free(owned[i]);
+    tally_free(j->tally);
+    mem_free(j);
+}
+
+void judgement_open(struct judgement *j, const bool *closed)
+{
+    for (size_t k = 0; k < j->d->levels; k++)
+        j->open[k] = !closed || !closed[k] || !design_is_active(j->d, k);
+}
+
+static void make_room(struct judgement *j, size_t n)
+{
+    if (n <= j->room)
+        return;
+    j->work = mem_grow(j->work, n, sizeof *j->work);
+    j->room = n;
+}
+
+/* ---- Monte Carlo standard errors ---- */
+
+double judge_ess(const struct judgement *j, const double *x)
+{
+    if (!j->by_ess)
+        return j->share * (double)j->draws.n;
+    return diag_ess(x, j->draws.n, j->draws.chains);
+}
+
+double judge_mcse_share(const struct judgement *j, const double *x, double p)
+{
+    return diag_mcse_probability(p, judge_ess(j, x));
+}
+
+double judge_mcse_mean(const struct judgement *j, const double *x, double mean)
+{
+    return diag_sd(x, j->draws.n, mean) / sqrt(judge_ess(j, x));
+}
+
+static void errors_of_share(struct judgement *j)
+{
+    const size_t cells = j->d->targets * j->d->levels;
+    const double ess = j->share * (double)j->draws.n;
+    for (size_t i = 0; i < cells; i++) {
+        j->ess_target[i] = ess;
+        j->mcse_target[i] = diag_mcse_probability(j->pr_target[i], ess);
+        j->mcse_meets[i] = diag_mcse_probability(j->pr_meets[i], ess);
+    }
+    for (size_t t = 0; t < j->d->targets; t++) {
+        j->ess_none[t] = ess;
+        j->mcse_none[t] = diag_mcse_probability(j->pr_none[t], ess);
+    }
+}
+
+void judge_counts(struct judgement *j, const struct draws *draws)
+{
+    j->draws = *draws;
+    make_room(j, draws->n);
+    tally_count(j->tally, draws, j->open, j->pr_target, j->pr_meets, j->pr_none);
+    if (j->by_ess)
+        for (size_t t = 0; t < j->d->targets; t++)
+            indicator_errors(j, t);
+    else
+        errors_of_share(j);
+}
+
+/* ---- selection (interface, section 5) ---- */
+
+static bool is_candidate(const struct judgement *j, size_t level)
+{
+    return j->open[level] && design_is_active(j->d, level);
+}
+
+/* The open active level with the largest pr_target, the lowest of equals, `but` left out. */
+static int most_probable(const struct judgement *j, size_t t, int but)
+{
+    const double *p = j->pr_target + t * j->d->levels;
+    int best = LEVEL_NONE;
+    for (size_t k = 0; k < j->d->levels; k++)
+        if (is_candidate(j, k) && (int)k != but && (best < 0 || p[k] > p[best]))
+            best = (int)k;
+    return best;
+}
+
+/* Standard error of the difference of two shares of the same draws, which exclude each other:
+ * sqrt((p1 + p2 - (p1 - p2)^2) / ESS). */
+static double difference_error(double p1, double p2, double ess)
+{
+    const double lead = p1 - p2;
+    return sqrt(fmax(0, p1 + p2 - lead * lead) / ess);
+}
+
+/* None is selected when Pr(none) > 0.5, so that 0.5 is what Pr(none) is compared with; a level is
+ * compared with the runner-up as well. */
+static void select_probable(struct judgement *j, size_t t)
+{
+    const size_t row = t * j->d->levels;
+    const double none = j->pr_none[t];
+    const int best = most_probable(j, t, LEVEL_NONE);
+    j->close[t] = fabs(none - 0.5) < 3 * j->mcse_none[t];
+    j->selected[t] = none > 0.5 ? LEVEL_NONE : best;
+    const int next = most_probable(j, t, best);
+    if (none > 0.5 || best < 0 || next < 0)
+        return;
+    const size_t a = row + (size_t)best, b = row + (size_t)next;
+    const double ess = fmin(j->ess_target[a], j->ess_target[b]);
+    const double error = difference_error(j->pr_target[a], j->pr_target[b], ess);
+    if (j->pr_target[a] - j->pr_target[b] < 3 * error)
+        j->close[t] = true;
+}
+
+/* The lowest that meets the target with the probability asked for; close when one of the levels up
+ * to it could as well lie on the other side. */
+static void select_meeting(struct judgement *j, size_t t)
+{
+    const double p = j->d->target[t].meets;
+    j->selected[t] = LEVEL_NONE;
+    j->close[t] = false;
+    for (size_t k = 0; k < j->d->levels && j->selected[t] < 0; k++) {
+        const size_t at = t * j->d->levels + k;
+        if (!is_candidate(j, k))
+            continue;
+        if (fabs(j->pr_meets[at] - p) < 3 * j->mcse_meets[at])
+            j->close[t] = true;
+        if (j->pr_meets[at] >= p)
+            j->selected[t] = (int)k;
+    }
+}
+
+void judge_selection(struct judgement *j)
+{
+    for (size_t t = 0; t < j->d->targets; t++)
+        if (j->d->target[t].by_meets)
+            select_meeting(j, t);
+        else
+            select_probable(j, t);
+}
+
+const double *judge_row(const struct judgement *j, size_t level, bool link)
+{
+    return (link ? j->draws.link : j->draws.response) + level * j->draws.stride;
+}
