@@ -1,0 +1,231 @@
+# SPDX-License-Identifier: GPL-3.0-or-later
+# Makefile: the workshop. It runs in two stages: the first looks for the packages (by name, and
+# installs what is missing), the second, a fresh make, does the work, because it asks pkg-config
+# for flags before any rule runs.
+#
+#   make                 build/terrace and build/libterrace.a
+#   make demo            analyse both examples and say where the reports are
+#   make test            all tests (FAST=1: fewer draws, the same tests)
+#   make bench           timings of one fit
+#   make install         DESTDIR, PREFIX (default /usr/local)
+#   make headers         each header compiles alone, under gcc and clang
+#   make floors          includes point to an earlier file of the floor, or below
+#   make floors-update   write new files into tests/workshop/floors.txt
+#   make format          is everything in the house's format? (format-fix applies it)
+#   make lengths         functions over 100 lines, files over 500 (only reported)
+#   make lint            cppcheck and clang --analyze
+#   make clean
+#
+# Variants, each with object files of its own: CC=clang, DEV=1 (warnings are errors, and more of
+# them), SAN=address,undefined. BUILD=directory builds somewhere else than in build/; V=1 shows each
+# compiler call.
+
+ifeq ($(origin CC),default)
+CC := gcc
+endif
+BUILD ?= build
+PREFIX ?= /usr/local
+GOALS := $(or $(MAKECMDGOALS),all)
+export FAST
+
+# ---- packages, by their Debian names ---------------------------------------------------------
+
+PACKAGES := gcc libc6-dev pkg-config libgsl-dev libnlopt-dev libcjson-dev libcunit1-dev \
+            libcsv-dev libssl-dev
+# What the scripts of tests/ call beyond the above and Debian's base system.
+TEST_PACKAGES :=
+ifneq ($(findstring clang,$(CC)),)
+PACKAGES += clang libomp-dev $(if $(SAN),libclang-rt-14-dev)
+endif
+ifneq ($(filter test,$(GOALS)),)
+PACKAGES += $(TEST_PACKAGES)
+endif
+ifneq ($(filter headers,$(GOALS)),)
+PACKAGES += clang libomp-dev
+endif
+ifneq ($(filter format format-fix,$(GOALS)),)
+PACKAGES += clang-format
+endif
+ifneq ($(filter lint,$(GOALS)),)
+PACKAGES += clang libomp-dev cppcheck
+endif
+# These need a shell and no package.
+ifeq ($(filter-out clean floors floors-update lengths,$(GOALS)),)
+PACKAGES :=
+endif
+
+ifndef PACKAGES_READY
+# ---- stage 1 ---------------------------------------------------------------------------------
+
+.PHONY: $(GOALS) second-stage
+$(GOALS): second-stage
+	@:
+second-stage:
+	@sh tests/workshop/bootstrap.sh "make $(GOALS)" $(sort $(PACKAGES))
+	@+$(MAKE) --no-print-directory PACKAGES_READY=1 $(GOALS)
+
+else
+# ---- stage 2 ---------------------------------------------------------------------------------
+
+empty :=
+Q := $(if $(V),,@)
+comma := ,
+space := $(empty) $(empty)
+variant := $(subst $(space),-,$(strip $(if $(DEV),dev) $(subst $(comma),$(space),$(SAN))))
+O := $(BUILD)/obj/$(notdir $(CC))-$(or $(variant),plain)
+GEN := $(BUILD)/gen
+
+WARNINGS := -Wall -Wextra -Wpedantic -Wshadow -Wconversion -Wsign-conversion
+WARNINGS_DEV := -Werror -Wstrict-prototypes -Wmissing-prototypes -Wold-style-definition -Wundef \
+    -Wformat=2 -Wcast-qual -Wcast-align -Wwrite-strings -Wpointer-arith -Wvla \
+    -Wdouble-promotion -Wredundant-decls -Wnested-externs -Winit-self -Wimplicit-fallthrough \
+    -Wfloat-conversion -Wunused-parameter -Wstrict-aliasing
+WARNINGS_DEV_GCC := -Wlogical-op -Wduplicated-cond -Wtrampolines -Wformat-overflow=2
+WARNINGS_DEV_CLANG := -Wcomma -Wmissing-variable-declarations -Wunreachable-code \
+    -Wconditional-uninitialized -Wassign-enum -Wloop-analysis
+IS_CLANG := $(findstring clang,$(CC))
+
+LIBRARIES := gsl libcjson libcrypto
+CPPFLAGS += -D_POSIX_C_SOURCE=200809L -Isrc -I. $(shell pkg-config --cflags $(LIBRARIES))
+CFLAGS ?= -O2 -g
+# The same bytes from every compiler: no contraction of a*b+c, and sqrt as one instruction.
+FIXED := -std=c11 -ffp-contract=off -fno-math-errno -fopenmp
+FLAGS := $(FIXED) $(WARNINGS) $(CFLAGS)
+ifdef DEV
+FLAGS += $(WARNINGS_DEV) $(if $(IS_CLANG),$(WARNINGS_DEV_CLANG),$(WARNINGS_DEV_GCC))
+endif
+ifdef SAN
+FLAGS += -fsanitize=$(SAN) -fno-sanitize-recover=all -fno-omit-frame-pointer
+endif
+LDLIBS += $(shell pkg-config --libs $(LIBRARIES)) -lcsv -lm
+CUNIT_LIBS := $(shell pkg-config --libs cunit)
+
+# Sources compiled once per instruction set, into NAME.sse2.o and NAME.avx2.o (and not a third
+# time). No other file ever gets a flag that allows instructions beyond the baseline.
+ISA_SOURCES := src/base/vecmath.c src/posterior/kernel.c
+ISAS := sse2 avx2
+
+MAIN := src/command/main.c
+SOURCES := $(filter-out $(MAIN),$(wildcard src/*/*.c models/*.c))
+ISA_PRESENT := $(filter $(ISA_SOURCES),$(SOURCES))
+PLAIN := $(filter-out $(ISA_SOURCES),$(SOURCES))
+ASSETS := $(wildcard src/report/page.css src/report/page.js)
+OBJECTS := $(PLAIN:%.c=$(O)/%.o) \
+    $(foreach isa,$(ISAS),$(ISA_PRESENT:%.c=$(O)/%.$(isa).o)) \
+    $(if $(ASSETS),$(O)/gen/page_assets.o)
+HEADERS := $(wildcard src/*/*.h models/*.h)
+
+TEST_SOURCES := $(wildcard tests/unit/test_*.c)
+TEST_HELPERS := $(filter-out $(TEST_SOURCES),$(wildcard tests/unit/*.c))
+TEST_PROGRAMS := $(TEST_SOURCES:tests/unit/%.c=$(O)/tests/unit/%)
+BENCH_PROGRAMS := $(patsubst tests/bench/%.c,$(O)/tests/bench/%,$(wildcard tests/bench/*.c))
+FORMATTED := $(wildcard src/*/*.[ch] models/*.[ch] tests/*/*.[ch])
+
+.PHONY: all programs demo test bench install headers floors floors-update format format-fix \
+    lengths lint clean FORCE
+.SECONDARY:
+.DELETE_ON_ERROR:
+
+all: $(BUILD)/terrace $(BUILD)/libterrace.a
+programs: all $(TEST_PROGRAMS) $(BENCH_PROGRAMS)
+
+# Objects are made anew when the flags change; what stands in build/ when the variant does.
+# $(call stamp,text): rewrites the target only when the text is another one.
+stamp = mkdir -p $(@D) && echo '$(1)' | cmp -s - $@ || echo '$(1)' > $@
+$(O)/.flags: FORCE
+	@$(call stamp,$(CC) $(CPPFLAGS) $(FLAGS) $(LDFLAGS) $(LDLIBS))
+$(BUILD)/.variant: FORCE
+	@$(call stamp,$(O))
+
+$(O)/%.o: %.c $(O)/.flags
+	@mkdir -p $(@D)
+	@echo "  CC    $@"
+	$(Q)$(CC) $(CPPFLAGS) $(FLAGS) -MMD -MP -c -o $@ $<
+
+define isa_rule
+$(O)/%.$(1).o: %.c $(O)/.flags
+	@mkdir -p $$(@D)
+	@echo "  CC    $$@"
+	$$(Q)$(CC) $(CPPFLAGS) $(FLAGS) -O3 -Wno-psabi -DISA=$(1) -m$(1) -MMD -MP -c -o $$@ $$<
+endef
+$(foreach isa,$(ISAS),$(eval $(call isa_rule,$(isa))))
+
+# page.css and page.js as text inside the program.
+$(GEN)/page_assets.c: $(ASSETS) tests/workshop/embed.sh
+	@mkdir -p $(@D)
+	sh tests/workshop/embed.sh report/page.h $(ASSETS) > $@
+$(O)/gen/page_assets.o: $(GEN)/page_assets.c $(O)/.flags
+	@mkdir -p $(@D)
+	@echo "  CC    $@"
+	$(Q)$(CC) $(CPPFLAGS) $(FLAGS) -MMD -MP -c -o $@ $<
+
+# The list of members is a prerequisite, so that a deleted source leaves the library too.
+$(O)/.members: FORCE
+	@$(call stamp,$(OBJECTS))
+$(O)/libterrace.a: $(OBJECTS) $(O)/.members
+	@echo "  AR    $@"
+	@rm -f $@
+	$(Q)ar rcs $@ $(OBJECTS)
+$(O)/terrace: $(O)/$(MAIN:.c=.o) $(O)/libterrace.a
+	@echo "  LINK  $@"
+	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -o $@ $^ $(LDLIBS)
+$(BUILD)/terrace $(BUILD)/libterrace.a: $(BUILD)/%: $(O)/% $(BUILD)/.variant
+	@cp $< $@.new && mv $@.new $@
+
+$(O)/tests/unit/test_%: $(O)/tests/unit/test_%.o $(TEST_HELPERS:%.c=$(O)/%.o) $(O)/libterrace.a
+	@echo "  LINK  $@"
+	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -o $@ $^ $(CUNIT_LIBS) $(LDLIBS)
+$(O)/tests/unit/%.o: CPPFLAGS += -Itests/unit
+$(O)/tests/bench/%: $(O)/tests/bench/%.o $(O)/libterrace.a
+	@echo "  LINK  $@"
+	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -o $@ $^ $(LDLIBS)
+
+-include $(wildcard $(O)/*/*.d $(O)/*/*/*.d)
+
+# ---- work ------------------------------------------------------------------------------------
+
+# Scripts find the program under test in TERRACE.
+test: all $(TEST_PROGRAMS)
+	@TERRACE="$(abspath $(BUILD)/terrace)" CC="$(CC)" TEST_PROGRAMS="$(TEST_PROGRAMS)" tests/run
+
+bench: $(BENCH_PROGRAMS)
+	@for b in $(BENCH_PROGRAMS); do $$b || exit 1; done
+
+# DEMO: examples, directories of data_examples/.
+DEMO := itch antibiotic_days
+demo: all
+	@set -e; for d in $(DEMO); do \
+	    in=data_examples/$$d; out=$(BUILD)/demo/$$d; mkdir -p $(BUILD)/demo; \
+	    echo "== terrace check $$in/design.json"; \
+	    $(BUILD)/terrace check $$in/design.json; \
+	    echo "== terrace analyze $$in/design.json $$in/interim.csv"; \
+	    $(BUILD)/terrace analyze $$in/design.json $$in/interim.csv --out $$out --force; \
+	done
+	@echo; echo "The reports:"; for d in $(DEMO); do echo "  $(BUILD)/demo/$$d/report.html"; done
+
+install: all
+	install -d $(DESTDIR)$(PREFIX)/bin $(DESTDIR)$(PREFIX)/lib
+	install -m 755 $(BUILD)/terrace $(DESTDIR)$(PREFIX)/bin/terrace
+	install -m 644 $(BUILD)/libterrace.a $(DESTDIR)$(PREFIX)/lib/libterrace.a
+	@set -e; for h in $(HEADERS); do f=$(DESTDIR)$(PREFIX)/include/terrace/$${h#src/}; \
+	    install -d "$${f%/*}"; install -m 644 $$h "$$f"; done
+
+headers:
+	@FLAGS="$(CPPFLAGS) $(FIXED) $(WARNINGS)" sh tests/workshop/headers.sh $(HEADERS)
+floors:
+	@bash tests/workshop/floors.sh
+floors-update:
+	@bash tests/workshop/floors.sh --update
+format:
+	@clang-format --dry-run -Werror $(FORMATTED) && echo "format: $(words $(FORMATTED)) files"
+format-fix:
+	clang-format -i $(FORMATTED)
+lengths:
+	@sh tests/workshop/lengths.sh $(FORMATTED)
+lint:
+	@FLAGS="$(CPPFLAGS)" FIXED="$(FIXED)" ISA_SOURCES="$(ISA_PRESENT)" \
+	    sh tests/workshop/lint.sh $(PLAIN) $(MAIN)
+clean:
+	rm -rf $(BUILD)
+
+endif
