@@ -12,6 +12,25 @@
 #include "design/fields.h"
 #include "design/rules.h"
 
+/* The tree, also when names stand twice in it (said by json_parse), so that the other faults are
+ * found in the same run. NULL when the syntax is wrong. */
+static cJSON *parse_tree(const char *bytes, size_t length, const char *file, struct err *e)
+{
+    const size_t before = e->count;
+    const char *end = NULL;
+    cJSON *tree;
+
+    if (json_parse(bytes, length, file, &tree, e) == STATUS_OK)
+        return tree;
+    for (size_t i = before; i < e->count; i++)
+        if (e->faults[i].pointer == NULL)
+            return NULL; /* a fault with a line is one of syntax */
+    tree = cJSON_ParseWithLengthOpts(bytes, length, &end, 0);
+    if (tree == NULL)
+        mem_exhausted();
+    return tree;
+}
+
 enum status design_parse(struct design **out, const char *bytes, size_t length, const char *file,
                          const struct vocabulary *v, struct err *e)
 {
@@ -20,8 +39,9 @@ enum status design_parse(struct design **out, const char *bytes, size_t length, 
     struct design *d;
 
     *out = NULL;
-    if (json_parse(bytes, length, file, &r.tree, e) != STATUS_OK)
-        return e->status;
+    r.tree = parse_tree(bytes, length, file, e);
+    if (r.tree == NULL)
+        return STATUS_INPUT;
     fields_check(r.tree, &design_fields, v, file, e);
     d = r.d = mem_new(1, sizeof *d);
     d->file = mem_text(file);

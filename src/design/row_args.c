@@ -31,7 +31,7 @@ static void add_keys(struct text *out, unsigned allowed)
         if (allowed & keys[i].bit)
             text_addf(out, "%s%s", out->length > start ? ", " : "", keys[i].key);
     if (out->length == start)
-        text_add(out, "none of these");
+        text_add(out, "no keys of its own");
 }
 
 void row_args_check(struct reader *r, const cJSON *tree, const char *key, unsigned allowed,

@@ -205,7 +205,8 @@ static void one_design_one_message(void)
 static void all_faults_in_one_run(void)
 {
     static const char text[] =
-        "{\"terrace\": 2, \"title\": \"\", \"subjects\": 10, \"seed\": -1, \"extra\": 0,\n"
+        "{\"terrace\": 2, \"title\": \"\", \"subjects\": 10, \"seed\": -1, \"extra\": 0, \"seed\": "
+        "1,\n"
         " \"levels\": {\"list\": [{\"label\": \"a\", \"value\": 1}, {\"label\": \"a\", \"value\": "
         "0}]},\n"
         " \"endpoint\": {\"name\": \"x\", \"type\": \"binary\", \"better\": \"higher\"},\n"
@@ -213,6 +214,7 @@ static void all_faults_in_one_run(void)
         " \"targets\": {\"t\": {\"rule\": \"optimal\", \"effect\": 0}},\n"
         " \"allocation\": {\"ratio\": [1, 2, 3]}}";
     static const char *const places[] = {"/terrace",
+                                         "/seed",
                                          "/title",
                                          "/seed",
                                          "/extra",
