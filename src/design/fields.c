@@ -9,7 +9,6 @@
 #include "base/mem.h"
 #include "base/number.h"
 #include "design/design_messages.h"
-#include "design/fields_limits.h"
 
 /* Where the check stands. */
 struct walk {
@@ -21,112 +20,6 @@ struct walk {
 
 #define FAULT(w, ...) \
     ((void)err_add((w)->e, STATUS_INPUT, (w)->file, 0, text_s(&(w)->pointer), __VA_ARGS__))
-
-bool field_nested(const struct field *f, const struct vocabulary *v, size_t i, struct field *out)
-{
-    if (f->nested != NULL) {
-        size_t rows = 0;
-
-        for (; f->nested[rows].kind != FIELD_END; rows++) {
-            if (rows == i) {
-                *out = f->nested[i];
-                return true;
-            }
-        }
-        i -= rows;
-    }
-    return f->nested_from != NULL && f->nested_from(v, f->data, i, out);
-}
-
-const char *field_word(const struct field *f, const struct vocabulary *v, size_t i)
-{
-    return f->words != NULL ? f->words[i] : f->words_from(v, i);
-}
-
-bool field_has_control(const char *s)
-{
-    for (; *s != '\0'; s++) {
-        const unsigned char c = (unsigned char)*s, next = (unsigned char)s[1];
-
-        if (c < 0x20 || c == 0x7F || (c == 0xC2 && next >= 0x80 && next <= 0x9F))
-            return true; /* C1 controls are U+0080 to U+009F */
-    }
-    return false;
-}
-
-/* --- words for messages --- */
-
-static void add_number(struct text *out, double x)
-{
-    char spare[NUMBER_CHARS];
-
-    text_add(out, number_shortest(spare, x));
-}
-
-void field_range(const struct field *f, struct text *out)
-{
-    if (f->kind != FIELD_WHOLE && f->low <= -NUMBER_LIMIT && f->high >= NUMBER_LIMIT) {
-        text_add(out, "within 1e100 of 0");
-        return;
-    }
-    if (f->low >= f->high) {
-        add_number(out, f->low);
-        return;
-    }
-    if (f->high < COUNT_LIMIT && !f->low_open && !f->high_open) {
-        text_add(out, "from ");
-        add_number(out, f->low);
-        text_add(out, " to ");
-        add_number(out, f->high);
-        return;
-    }
-    text_add(out, f->low_open ? "greater than " : "at least ");
-    add_number(out, f->low);
-    text_add(out, f->high_open ? " and less than " : " and at most ");
-    add_number(out, f->high);
-}
-
-/* "2 to 128 entries", "2 entries", "at least 1 entry" */
-static void describe_count(const struct field *f, struct text *out)
-{
-    text_add(out, f->low < f->high ? "from " : "exactly ");
-    add_number(out, f->low);
-    if (f->low < f->high) {
-        text_add(out, " to ");
-        add_number(out, f->high);
-    }
-}
-
-static void describe_words(const struct field *f, const struct vocabulary *v, struct text *out)
-{
-    for (size_t i = 0; field_word(f, v, i) != NULL; i++)
-        text_addf(out, "%s%s", i > 0 ? ", " : "", field_word(f, v, i));
-}
-
-void field_describe(const struct field *f, const struct vocabulary *v, struct text *out)
-{
-    static const char *const plain[] = {
-        [FIELD_TEXT] = "a string",        [FIELD_NUMBER] = "a number",
-        [FIELD_WHOLE] = "a whole number", [FIELD_LIST] = "a list",
-        [FIELD_FLAG] = "true or false",   [FIELD_OBJECT] = "an object",
-        [FIELD_MAP] = "an object",        [FIELD_WORD] = "one of the words ",
-    };
-    struct field option;
-
-    if (f->kind != FIELD_CHOICE) {
-        text_add(out, plain[f->kind]);
-        if (f->kind == FIELD_WORD)
-            describe_words(f, v, out);
-        return;
-    }
-    for (size_t i = 0; field_nested(f, v, i, &option); i++) {
-        if (option.tag != NULL)
-            continue; /* said by the last alternative */
-        if (i > 0 && f->nested[i - 1].tag == NULL)
-            text_add(out, " or ");
-        field_describe(&option, v, out);
-    }
-}
 
 static const char *json_type(const cJSON *item)
 {
@@ -202,7 +95,7 @@ static bool check_word(struct walk *w, const struct field *f, const char *s)
             return true;
     }
     list[count] = NULL;
-    describe_words(f, w->v, &allowed);
+    field_words(f, w->v, &allowed);
     near = text_nearest(s, list);
     if (near != NULL)
         FAULT(w, MSG_WORD_NEAR, s, near, text_s(&allowed));
@@ -409,7 +302,7 @@ static bool check_list(struct walk *w, const struct field *f, cJSON *list)
     }
     if ((double)count >= f->low && (double)count <= f->high)
         return true;
-    describe_count(f, &allowed);
+    field_count(f, &allowed);
     FAULT(w, MSG_COUNT, count, text_s(&allowed));
     text_release(&allowed);
     return false;

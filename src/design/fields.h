@@ -76,6 +76,10 @@ const char *field_word(const struct field *f, const struct vocabulary *v, size_t
 void field_describe(const struct field *f, const struct vocabulary *v, struct text *out);
 /* The range of a number in words: "greater than 0 and at most 1". */
 void field_range(const struct field *f, struct text *out);
+/* The number of entries of a list: "from 2 to 128", "exactly 2". */
+void field_count(const struct field *f, struct text *out);
+/* The words of a FIELD_WORD, separated by commas. */
+void field_words(const struct field *f, const struct vocabulary *v, struct text *out);
 
 /* Reserved words of labels, NULL-terminated. */
 extern const char *const field_reserved[];
