@@ -331,18 +331,18 @@ static void decisions_chart(struct text *out, const struct analysis_report *r)
 
 static void decisions_words(struct text *out, const struct analysis_report *r)
 {
-    text_add(out, "<ul>\n");
-    for (size_t i = 0; i <= r->a->decisions; i++) {
-        struct text t = TEXT_INIT;
-        if (i < r->a->decisions)
-            words_decision(&t, r, i);
-        else if (r->a->final_success.condition)
-            words_final_success(&t, r);
-        if (t.length > 0)
-            page_item(out, text_s(&t));
-        text_release(&t);
-    }
-    text_add(out, "</ul>\n");
+    page_paragraph(out, NULL,
+                   "Each diamond is the value of a measure, a probability. It has to pass the "
+                   "upright bar into the dotted part of its track.");
+    page_paragraph(out, NULL,
+                   "The bar through the diamond is three Monte Carlo errors to either side: what "
+                   "another run of the computation could give. Where it reaches the threshold the "
+                   "table says \"close\".");
+    page_paragraph(out, NULL,
+                   r->a->final ? "At the last analysis only the final success condition is "
+                                 "read; the others are shown for completeness."
+                               : "What is not in force at this analysis is shown in grey and "
+                                 "does not act, whatever its value.");
 }
 
 static void decisions_figure(struct text *out, struct sheet *s)

@@ -54,6 +54,33 @@ static void what_was_analysed(struct text *out, const struct analysis_report *r)
     page_section_close(out);
 }
 
+/* Every decision of the design in words, so that nobody has to read the charts for them. */
+static void why(struct text *out, const struct analysis_report *r)
+{
+    page_section_open(out, "why", "Why this is recommended");
+    if (r->a->decisions == 0 && !r->a->final_success.condition)
+        page_paragraph(out, NULL, "The design names no decisions.");
+    else
+        page_paragraph(out, NULL,
+                       "Decisions are read in the order of the design; the first that "
+                       "is in force and met acts.");
+    if (r->a->decisions > 0 || r->a->final_success.condition)
+        text_add(out, "<ul>\n");
+    for (size_t i = 0; i <= r->a->decisions; i++) {
+        struct text t = TEXT_INIT;
+        if (i < r->a->decisions)
+            words_decision(&t, r, i);
+        else if (r->a->final_success.condition)
+            words_final_success(&t, r);
+        if (t.length > 0)
+            page_item(out, text_s(&t));
+        text_release(&t);
+    }
+    if (r->a->decisions > 0 || r->a->final_success.condition)
+        text_add(out, "</ul>\n");
+    page_section_close(out);
+}
+
 static void how_sure(struct text *out, const struct analysis_report *r)
 {
     page_section_open(out, "sure", "How sure this is");
@@ -95,6 +122,7 @@ void page_add_summary(struct text *out, const struct analysis_report *r)
     answer(out, r);
     text_add(out, "<div class=\"columns\">\n");
     what_was_analysed(out, r);
+    why(out, r);
     how_sure(out, r);
     what_to_distrust(out, r);
     text_add(out, "</div>\n");

@@ -128,7 +128,8 @@ void add_condition(struct text *out, const struct analysis_report *r, const stru
 {
     char s[NUMBER_CHARS];
     c->measure->sentence(c, r->d, out);
-    text_addf(out, c->above ? " above %s" : " below %s", number_shortest(s, c->threshold));
+    text_addf(out, c->above ? "; has to be above %s" : "; has to be below %s",
+              number_shortest(s, c->threshold));
 }
 
 struct digits digits_condition(const struct condition *c, const struct condition_result *x)
@@ -202,6 +203,37 @@ static void number_cell(struct table *t, double x, struct digits g)
     table_next(t);
 }
 
+/* A fixed parameter has a value and nothing else. */
+static bool is_fixed(const struct parameter_result *x)
+{
+    return x->value.sd == 0 && isnan(x->diag.rhat);
+}
+
+static void spread_cells(struct table *t, const struct parameter_result *x)
+{
+    const double v[] = {x->value.mean, x->value.sd, x->value.q025, x->value.q50, x->value.q975};
+    const bool fixed = is_fixed(x);
+    const struct digits g = digits_for(x->diag.mcse_mean, fabs(x->value.q975), 4);
+    for (size_t i = 0; i < sizeof v / sizeof v[0]; i++) {
+        if (fixed && i == 1)
+            table_cell(t, "fixed");
+        else
+            number_cell(t, fixed && i > 0 ? NAN : v[i], fixed ? (struct digits){0, 6} : g);
+    }
+}
+
+static void parameter_row(struct table *t, const struct parameter_result *x)
+{
+    table_cell(t, x->name);
+    spread_cells(t, x);
+    number_cell(t, x->diag.rhat, (struct digits){3, 0});
+    number_cell(t, x->diag.ess_bulk, (struct digits){0, 0});
+    number_cell(t, x->diag.ess_tail, (struct digits){0, 0});
+    figure_error(table_open(t), x->diag.mcse_mean);
+    table_next(t);
+    number_cell(t, x->sd_over_prior_sd, (struct digits){2, 0});
+}
+
 struct table *table_parameters(const struct analysis_report *r)
 {
     static const char *const headings[] = {"Mean",     "SD",           "2.5%",     "50%",
@@ -211,19 +243,7 @@ struct table *table_parameters(const struct analysis_report *r)
     table_column(t, "Parameter", false);
     for (size_t i = 0; i < sizeof headings / sizeof headings[0]; i++)
         table_column(t, headings[i], true);
-    for (size_t p = 0; p < r->a->parameters; p++) {
-        const struct parameter_result *x = &r->a->parameter[p];
-        const double v[] = {x->value.mean, x->value.sd, x->value.q025, x->value.q50, x->value.q975};
-        const struct digits g = digits_for(x->diag.mcse_mean, fabs(x->value.q975), 4);
-        table_cell(t, x->name);
-        for (size_t i = 0; i < sizeof v / sizeof v[0]; i++)
-            number_cell(t, v[i], g);
-        number_cell(t, x->diag.rhat, (struct digits){3, 0});
-        number_cell(t, x->diag.ess_bulk, (struct digits){0, 0});
-        number_cell(t, x->diag.ess_tail, (struct digits){0, 0});
-        figure_error(table_open(t), x->diag.mcse_mean);
-        table_next(t);
-        number_cell(t, x->sd_over_prior_sd, (struct digits){2, 0});
-    }
+    for (size_t p = 0; p < r->a->parameters; p++)
+        parameter_row(t, &r->a->parameter[p]);
     return t;
 }

@@ -90,9 +90,10 @@ void words_endpoint(struct text *out, const struct analysis_report *r)
               r->d->type == ENDPOINT_BINARY ? "yes or no" : "continuous",
               r->d->higher_is_better ? "higher" : "lower");
     if (r->d->observed_after > 0) {
-        text_addf(out, "; known %s ", r->d->time_unit);
+        text_add(out, "; known ");
         add_shortest(out, r->d->observed_after);
-        text_add(out, " after enrolment");
+        text_addf(out, " %s%s after enrolment", r->d->time_unit,
+                  r->d->observed_after == 1 ? "" : "s");
     }
     text_add(out, ").");
 }
@@ -176,7 +177,7 @@ void words_decision(struct text *out, const struct analysis_report *r, size_t de
               verdict_phrase(r, x));
     add_outcomes(out, r, &d->when, x);
     if (!d->binding)
-        text_add(out, " It is not binding: it may be overruled without raising the error rates.");
+        text_add(out, " It is not binding: error rates are computed as if it were not there.");
 }
 
 void words_final_success(struct text *out, const struct analysis_report *r)

@@ -7,7 +7,7 @@
 #include "base/number.h"
 #include "report/svg.h"
 
-enum { LEGEND_ROW = 20, TITLE_ROW = 16, KEY = 28, TITLE_GAP = 8 };
+enum { LEGEND_ROW = 20, TITLE_ROW = 16, KEY = 28, TITLE_GAP = 10, LEGEND_GAP = 6 };
 
 /* ---- frame ---- */
 
@@ -50,7 +50,8 @@ static double title_room(const struct frame *f, const char *title)
 void frame_fit(struct frame *f, const char *const *names, size_t n, const char *title,
                double plot_height, double below)
 {
-    f->top = LEGEND_ROW * (double)legend_rows(f, names, n) + title_room(f, title) + TITLE_GAP;
+    f->top = LEGEND_ROW * (double)legend_rows(f, names, n) + LEGEND_GAP + title_room(f, title) +
+             TITLE_GAP;
     f->bottom = f->top + plot_height;
     f->height = f->bottom + below;
 }

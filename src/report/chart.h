@@ -10,6 +10,8 @@
 
 #include "base/text.h"
 
+enum { LEVEL_PLACES = 129 }; /* 128 levels and an extra column */
+
 /* The levels along the bottom. */
 struct chart_levels {
     size_t n;
@@ -101,6 +103,7 @@ void legend_next(struct text *out, struct legend *g, const char *name, double *x
 void levels_place(const struct chart_levels *l, const struct frame *f, bool to_scale, double *x);
 /* Whether placing the levels in proportion leaves room for their labels. */
 bool levels_fit_to_scale(const struct chart_levels *l, const struct frame *f);
+void levels_make_room_left(const struct chart_levels *l, struct frame *f, bool to_scale);
 double levels_room(const struct chart_levels *l, const struct frame *f, bool to_scale);
 void levels_draw(struct text *out, const struct chart_levels *l, const struct frame *f,
                  bool to_scale, const double *x);

@@ -7,7 +7,11 @@
 #include "base/mem.h"
 #include "report/svg.h"
 
-static const char *const bar_classes[] = {"bar-solid", "bar-hatch"};
+/* Probabilities are solid; of two shares the first is pale, the second hatched. */
+static const char *bar_class(const struct chart_bars *c, size_t bar)
+{
+    return !c->percent ? "bar-solid" : bar == 0 ? "bar-pale" : "bar-hatch";
+}
 
 struct drawing {
     const struct chart_bars *c;
@@ -48,8 +52,7 @@ static void bars_draw(struct text *out, const struct drawing *w)
             const double y = at_y(w, w->c->bar[b][k]);
             const double x = w->x[k] + width * ((double)b - (double)bars / 2);
             if (w->c->bar[b][k] > 0)
-                svg_rect(out, bars == 1 || b == 1 ? bar_classes[b] : "bar-pale", x, y, width,
-                         w->f.bottom - y);
+                svg_rect(out, bar_class(w->c, b), x, y, width, w->f.bottom - y);
         }
 }
 
@@ -92,7 +95,7 @@ static void legend_draw(struct text *out, const struct drawing *w, const char *m
     double x, y;
     for (size_t b = 0; b < 2 && c->bar_name[b]; b++) {
         legend_next(out, &g, c->bar_name[b], &x, &y);
-        svg_rect(out, c->bar_name[1] && b == 0 ? "bar-pale" : bar_classes[b], x - 8, y - 6, 16, 12);
+        svg_rect(out, bar_class(c, b), x - 8, y - 6, 16, 12);
     }
     if (c->mark_name[0]) {
         legend_next(out, &g, c->mark_name[0], &x, &y);
@@ -126,6 +129,7 @@ static void draw(struct text *out, const struct chart_bars *c, bool narrow)
     w.y = bars_axis(c, w.columns);
     const char *unit = c->percent ? "%" : "";
     w.f.left = axis_room(&w.y, unit);
+    levels_make_room_left(&c->levels, &w.f, false);
     frame_fit(&w.f, names, n, c->title, narrow ? 180 : 210, levels_room(&c->levels, &w.f, false));
     w.f.top += marked ? 8 : 0; /* for the triangle */
     w.x = mem_new(c->levels.n + 1, sizeof *w.x);

@@ -5,19 +5,24 @@
 
 #include <string.h>
 
+#include "base/base.h"
 #include "report/svg.h"
 
 enum {
     LABEL_CHARS = 16, /* longer labels are cut: the table beside the chart has them in full */
-    TURNED_GAP = 15,  /* pixels between turned labels */
+    TURNED_GAP = 15,  /* pixels between turned labels when all are shown */
+    THINNED_GAP = 28, /* and when some are left out */
     LABEL_GAP = 8     /* pixels between level labels */
 };
 #define SIN_40 0.643
+#define COS_40 0.766
 
 /* ---- positions ---- */
 
 void levels_place(const struct chart_levels *l, const struct frame *f, bool to_scale, double *x)
 {
+    if (l->n + 1 > LEVEL_PLACES)
+        BUG("more levels than a chart has places");
     const double edge = f->narrow ? 16 : 28;
     const double columns = (double)l->n + (l->extra ? 1.4 : 0);
     const double step = (f->right - f->left) / columns;
@@ -42,9 +47,7 @@ double levels_gap(const struct chart_levels *l, const double *x)
 
 bool levels_fit_to_scale(const struct chart_levels *l, const struct frame *f)
 {
-    double x[256];
-    if (l->n + 1 > sizeof x / sizeof x[0])
-        return false;
+    double x[LEVEL_PLACES];
     levels_place(l, f, true, x);
     const double gap = levels_gap(l, x);
     const double mean = (x[l->n - 1] - x[0]) / (double)(l->n - 1);
@@ -87,11 +90,21 @@ static bool labels_are_turned(const struct chart_levels *l, const double *x)
     return false;
 }
 
+/* Turned labels reach to the left of the plot: moves f->left where they would leave the figure. */
+void levels_make_room_left(const struct chart_levels *l, struct frame *f, bool to_scale)
+{
+    double x[LEVEL_PLACES];
+    levels_place(l, f, to_scale, x);
+    if (!labels_are_turned(l, x))
+        return;
+    const double reach = COS_40 * label_width(l->label[0]) - (x[0] + 4);
+    if (reach > 0)
+        f->left += reach;
+}
+
 double levels_room(const struct chart_levels *l, const struct frame *f, bool to_scale)
 {
-    double x[256], widest = l->extra ? label_width(l->extra) : 0;
-    if (l->n + 1 > sizeof x / sizeof x[0])
-        return 0;
+    double x[LEVEL_PLACES], widest = l->extra ? label_width(l->extra) : 0;
     levels_place(l, f, to_scale, x);
     if (!labels_are_turned(l, x))
         return 44;
@@ -119,8 +132,8 @@ static void label_draw(struct text *out, const struct frame *f, bool turned, boo
 static void labels_draw(struct text *out, const struct chart_levels *l, const struct frame *f,
                         bool turned, const double *x)
 {
-    const double need = turned ? TURNED_GAP : 0;
-    const double end = l->extra && turned ? x[l->n] - TURNED_GAP : f->width;
+    const double need = !turned ? 0 : levels_gap(l, x) < TURNED_GAP ? THINNED_GAP : TURNED_GAP;
+    const double end = l->extra && turned ? x[l->n] - need : f->width;
     double last = -1e9;
     for (size_t k = 0; k < l->n; k++) {
         const bool marked = (int)k == l->marked;

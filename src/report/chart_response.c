@@ -155,6 +155,7 @@ static void draw(struct text *out, const struct chart_response *c, bool narrow)
     struct drawing w = {.c = c, .f = frame_new(narrow, 0), .y = response_axis(c)};
     w.f.left = axis_room(&w.y, "");
     w.to_scale = levels_fit_to_scale(&c->levels, &w.f);
+    levels_make_room_left(&c->levels, &w.f, w.to_scale);
     frame_fit(&w.f, names, c->points ? 3 : 2, c->title, narrow ? 230 : 300,
               levels_room(&c->levels, &w.f, w.to_scale));
     w.x = mem_new(c->levels.n + 1, sizeof *w.x);

@@ -100,5 +100,9 @@ void page_table(struct text *out, struct table *t, const char *caption)
     text_add(out, "\">\n");
     table_html(out, t, caption);
     text_add(out, "</div>\n");
+    /* The caption itself would scroll away with the table: shown once more beneath the box. */
+    text_add(out, "<p class=\"note\" aria-hidden=\"true\">");
+    text_add_html(out, caption);
+    text_add(out, "</p>\n");
     table_free(t);
 }
