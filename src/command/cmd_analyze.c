@@ -172,7 +172,7 @@ static enum status compute(struct run *r, const struct options *o, struct err *e
     return analysis_run(&r->analysis, r->analyst, &r->data->by_level, q, e);
 }
 
-static void write_documents(struct run *r, const struct options *o, const struct terminal *t)
+static void write_documents(struct run *r, const struct options *o)
 {
     struct analysis_report report = {.d = r->design,
                                      .data = r->data,
@@ -181,7 +181,7 @@ static void write_documents(struct run *r, const struct options *o, const struct
                                      .seed = r->request.seed};
     analysis_json(&r->json, &report);
     analysis_page(&r->page, &report);
-    analysis_text(&r->tables, &report, t->out_colour);
+    analysis_text(&r->tables, &report);
     if (options_has(o, "draws")) {
         report.draws = analyst_draws(r->analyst);
         draws_csv(&r->draws, &report);
@@ -243,7 +243,7 @@ static enum status run_all(struct run *r, const struct options *o, const struct 
     if (status != STATUS_OK && status != STATUS_DISTRUSTED) {
         return status;
     }
-    write_documents(r, o, t);
+    write_documents(r, o);
     enum status written = put_documents(r, o, e);
     if (written != STATUS_OK) {
         return written;

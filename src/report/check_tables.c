@@ -2,17 +2,13 @@
 /* check_tables.c: the tables of a design in words. */
 #include <math.h>
 
+#include "base/base.h"
 #include "base/number.h"
 #include "report/check_text.h"
 #include "report/check_words.h"
 #include "report/table.h"
 
-enum { PROBABILITY_DECIMALS = 3, SCENARIOS_A_TABLE = 4, BAND_STEPS = 100 };
-
-static void add_words(struct table *c, const struct text *s)
-{
-    table_cell(c, text_s(s));
-}
+enum { PROBABILITY_DECIMALS = 3, TARGETS_A_TABLE = 4, SCENARIOS_A_TABLE = 4, BAND_STEPS = 100 };
 
 static void add_number(struct table *c, double x)
 {
@@ -20,11 +16,28 @@ static void add_number(struct table *c, double x)
     table_cell(c, isnan(x) ? "–" : number_significant(s, x, 4));
 }
 
-static void add_header(struct table *c, const char *const *names, size_t n)
+static void add_fixed(struct table *c, double x, int decimals)
 {
+    char s[NUMBER_CHARS];
+    table_cell(c, number_fixed(s, x, decimals));
+}
+
+/* Headings, the first `words` of them over words, the others over numbers. */
+static struct table *table_with(const char *const *headings, size_t n, size_t words)
+{
+    struct table *c = table_new();
     for (size_t i = 0; i < n; i++) {
-        table_cell(c, names[i]);
+        table_column(c, headings[i], i >= words);
     }
+    return c;
+}
+
+static void column_prefixed(struct table *c, const char *prefix, const char *name)
+{
+    struct text s = TEXT_INIT;
+    text_addf(&s, "%s %s", prefix, name);
+    table_column(c, text_s(&s), true);
+    text_release(&s);
 }
 
 void check_table_priors(struct text *out, const struct check_report *r)
@@ -32,15 +45,12 @@ void check_table_priors(struct text *out, const struct check_report *r)
     static const char *const names[] = {"parameter", "prior", "5%", "50%", "95%"};
     static const double q[] = {0.05, 0.5, 0.95};
     const struct model *m = &r->d->model;
-    struct table *c = table_new();
-    add_header(c, names, 5);
+    struct table *c = table_with(names, COUNT_OF(names), 2);
     for (size_t i = 0; i < m->parameters; i++) {
         const struct prior *p = &m->prior[i];
-        struct text s = TEXT_INIT;
-        say_prior(&s, p);
         table_cell(c, m->parameter[i]->name);
-        add_words(c, &s);
-        text_release(&s);
+        say_prior(table_open(c), p);
+        table_next(c);
         for (size_t j = 0; j < 3; j++) {
             bool known = !prior_is_fixed(p) && prior_is_computable(p);
             add_number(c, known ? prior_quantile(p, q[j]) : NAN);
@@ -72,16 +82,9 @@ void check_table_responses(struct text *out, const struct check_report *r)
 {
     const struct design *d = r->d;
     bool gain = design_has_gain(d), binary = d->type == ENDPOINT_BINARY;
-    struct table *c = table_new();
-    table_cell(c, "level");
-    table_cell(c, binary ? "rate 5%" : "response 5%");
-    table_cell(c, "50%");
-    table_cell(c, "95%");
-    if (gain) {
-        table_cell(c, "gain 5%");
-        table_cell(c, "50%");
-        table_cell(c, "95%");
-    }
+    const char *names[] = {"level", "response 5%", "50%", "95%", "gain 5%", "50%", "95%"};
+    names[1] = binary ? "rate 5%" : names[1];
+    struct table *c = table_with(names, gain ? 7 : 4, 1);
     int dr = band_decimals(r->bands->response, d->levels);
     int dg = band_decimals(r->bands->gain, d->levels);
     for (size_t k = 0; k < d->levels; k++) {
@@ -95,39 +98,39 @@ void check_table_responses(struct text *out, const struct check_report *r)
     table_free(c);
 }
 
-static void add_prefixed(struct table *c, const char *prefix, const char *name)
-{
-    struct text s = TEXT_INIT;
-    text_addf(&s, "%s %s", prefix, name);
-    add_words(c, &s);
-    text_release(&s);
-}
-
-void check_table_targets(struct text *out, const struct check_report *r)
+static void target_table(struct text *out, const struct check_report *r, size_t from, size_t to)
 {
     const struct design *d = r->d;
     struct table *c = table_new();
-    table_cell(c, "probability that it");
-    for (size_t i = 0; i < d->targets; i++) {
-        add_prefixed(c, "is", d->target[i].name);
-        add_prefixed(c, "meets", d->target[i].name);
+    table_column(c, "probability that it", false);
+    for (size_t i = from; i < to; i++) {
+        column_prefixed(c, "is", d->target[i].name);
+        column_prefixed(c, "meets", d->target[i].name);
     }
     for (size_t k = 0; k < d->levels; k++) {
         table_cell(c, d->level[k].label);
-        for (size_t i = 0; i < d->targets; i++) {
+        for (size_t i = from; i < to; i++) {
             bool active = design_is_active(d, k);
-            add_fixed(c, active ? r->prior->level[k].pr_target[i] : NAN,
-                           PROBABILITY_DECIMALS);
+            add_fixed(c, active ? r->prior->level[k].pr_target[i] : NAN, PROBABILITY_DECIMALS);
             add_fixed(c, active ? r->prior->level[k].pr_meets[i] : NAN, PROBABILITY_DECIMALS);
         }
     }
     table_cell(c, "none");
-    for (size_t i = 0; i < d->targets; i++) {
+    for (size_t i = from; i < to; i++) {
         add_fixed(c, r->prior->target[i].pr_none, PROBABILITY_DECIMALS);
         table_cell(c, "");
     }
     table_text(out, c);
     table_free(c);
+}
+
+void check_table_targets(struct text *out, const struct check_report *r)
+{
+    for (size_t from = 0; from < r->d->targets; from += TARGETS_A_TABLE) {
+        size_t to = from + TARGETS_A_TABLE < r->d->targets ? from + TARGETS_A_TABLE : r->d->targets;
+        text_add(out, from ? "\n" : "");
+        target_table(out, r, from, to);
+    }
 }
 
 static void add_cut(struct table *c, const struct expected_cut *cut, bool failure)
@@ -148,24 +151,18 @@ static void add_cut(struct table *c, const struct expected_cut *cut, bool failur
 
 static void add_cut_name(struct table *c, const struct design *d, size_t i)
 {
-    struct text s = TEXT_INIT;
-    text_addf(&s, "%zu, at ", i + 1);
-    say_point(&s, d, d->analyses.at[i]);
-    add_words(c, &s);
-    text_release(&s);
+    text_addf(table_open(c), "%zu, at ", i + 1);
+    say_point(table_open(c), d, d->analyses.at[i]);
+    table_next(c);
 }
 
 void check_table_expected(struct text *out, const struct check_report *r)
 {
     const struct expected *x = r->expected;
     bool failure = r->d->dropped == DROPPED_FAILURE;
-    struct table *c = table_new();
-    table_cell(c, "expected at analysis");
-    table_cell(c, r->d->time_unit);
-    table_cell(c, "randomized");
-    table_cell(c, "observed");
-    table_cell(c, "pending");
-    table_cell(c, "dropped");
+    const char *names[] = {
+        "expected at analysis", r->d->time_unit, "randomized", "observed", "pending", "dropped"};
+    struct table *c = table_with(names, COUNT_OF(names), 1);
     bool delayed = false;
     for (size_t i = 0; i < x->count; i++) {
         add_cut_name(c, r->d, i);
@@ -194,22 +191,20 @@ static void add_truth(struct table *c, const struct design *d, const struct scen
         return;
     }
     char x[NUMBER_CHARS], g[NUMBER_CHARS];
-    struct text cell = TEXT_INIT;
-    text_add(&cell, number_significant(x, s->response[k], 4));
+    text_add(table_open(c), number_significant(x, s->response[k], 4));
     double gain = expected_gain(d, s->response, k);
     if (!isnan(gain)) {
-        text_addf(&cell, " (%s%s)", gain > 0 ? "+" : "", number_significant(g, gain, 3));
+        text_addf(table_open(c), " (%s%s)", gain > 0 ? "+" : "", number_significant(g, gain, 3));
     }
-    add_words(c, &cell);
-    text_release(&cell);
+    table_next(c);
 }
 
 static void scenario_table(struct text *out, const struct design *d, size_t from, size_t to)
 {
     struct table *c = table_new();
-    table_cell(c, design_has_gain(d) ? "true response (gain)" : "true response");
+    table_column(c, design_has_gain(d) ? "true response (gain)" : "true response", false);
     for (size_t i = from; i < to; i++) {
-        table_cell(c, d->scenario[i].name);
+        table_column(c, d->scenario[i].name, true);
     }
     for (size_t k = 0; k < d->levels; k++) {
         table_cell(c, d->level[k].label);
@@ -218,7 +213,8 @@ static void scenario_table(struct text *out, const struct design *d, size_t from
         }
     }
     for (size_t t = 0; t < d->targets; t++) {
-        add_prefixed(c, "true", d->target[t].name);
+        text_addf(table_open(c), "true %s", d->target[t].name);
+        table_next(c);
         for (size_t i = from; i < to; i++) {
             const double *m = d->scenario[i].response;
             int level = m ? analysis_true_level(d, t, m) : LEVEL_NONE;
