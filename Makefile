@@ -78,7 +78,7 @@ GEN := $(BUILD)/gen
 WARNINGS := -Wall -Wextra -Wpedantic -Wshadow -Wconversion -Wsign-conversion
 WARNINGS_DEV := -Werror -Wstrict-prototypes -Wmissing-prototypes -Wold-style-definition -Wundef \
     -Wformat=2 -Wcast-qual -Wcast-align -Wwrite-strings -Wpointer-arith -Wvla \
-    -Wdouble-promotion -Wredundant-decls -Wnested-externs -Winit-self -Wimplicit-fallthrough \
+    -Wredundant-decls -Wnested-externs -Winit-self -Wimplicit-fallthrough \
     -Wfloat-conversion -Wunused-parameter -Wstrict-aliasing
 WARNINGS_DEV_GCC := -Wlogical-op -Wduplicated-cond -Wtrampolines -Wformat-overflow=2
 WARNINGS_DEV_CLANG := -Wcomma -Wmissing-variable-declarations -Wunreachable-code \
@@ -102,7 +102,7 @@ CUNIT_LIBS := $(shell pkg-config --libs cunit)
 
 # Sources compiled once per instruction set, into NAME.sse2.o and NAME.avx2.o (and not a third
 # time). No other file ever gets a flag that allows instructions beyond the baseline.
-ISA_SOURCES := src/base/vecmath.c src/posterior/kernel.c
+ISA_SOURCES := src/base/vecmath.c src/posterior/marginal.c src/posterior/kernel.c
 ISAS := sse2 avx2
 
 MAIN := src/command/main.c
