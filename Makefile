@@ -153,7 +153,8 @@ $(foreach isa,$(ISAS),$(eval $(call isa_rule,$(isa))))
 # page.css and page.js as text inside the program.
 $(GEN)/page_assets.c: $(ASSETS) tests/workshop/embed.sh
 	@mkdir -p $(@D)
-	sh tests/workshop/embed.sh report/page.h $(ASSETS) > $@
+	@echo "  TEXT  $@"
+	$(Q)sh tests/workshop/embed.sh report/page.h $(ASSETS) > $@
 $(O)/gen/page_assets.o: $(GEN)/page_assets.c $(O)/.flags
 	@mkdir -p $(@D)
 	@echo "  CC    $@"
