@@ -247,6 +247,8 @@ static void write_scenarios(struct json_writer *w, const struct design *d)
         json_key_bool(w, "null", s->is_null);
         write_truth(w, "response", d, s->response, false);
         write_truth(w, "gain", d, s->response, true);
+        write_truth(w, "sd", d, s->sd, false);
+        json_key_number(w, "trend", s->trend);
         write_true_levels(w, d, s->response);
         json_close(w);
     }

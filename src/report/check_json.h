@@ -16,7 +16,7 @@
  *                               "observed", "pending", "dropped"}]},
  *    "decisions": [{"action", "sentence"}], "final": sentence or null,
  *    "scenarios": [{"name", "null", "response": by level or null, "gain": by level or null,
- *                   "true_level": {TARGET: label or null}}],
+ *                   "sd": by level or null, "trend", "true_level": {TARGET: label or null}}],
  *    "warnings": [], "remarks": [], "reminders": []}
  *
  * A number that does not exist is null. In a scenario whose truth is drawn from the prior

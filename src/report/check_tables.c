@@ -199,6 +199,51 @@ static void add_truth(struct table *c, const struct design *d, const struct scen
     table_next(c);
 }
 
+/* One number, or "2 to 3" where levels differ. */
+static void add_sd(struct table *c, const struct design *d, const struct scenario *s)
+{
+    if (!s->sd) {
+        table_cell(c, "");
+        return;
+    }
+    double low = s->sd[0], high = s->sd[0];
+    for (size_t k = 1; k < d->levels; k++) {
+        low = fmin(low, s->sd[k]);
+        high = fmax(high, s->sd[k]);
+    }
+    say_number(table_open(c), low);
+    if (high > low) {
+        text_add(table_open(c), " to ");
+        say_number(table_open(c), high);
+    }
+    table_next(c);
+}
+
+/* Rows that only some designs need. */
+static void scenario_extras(struct table *c, const struct design *d, size_t from, size_t to)
+{
+    bool trend = false, sd = false;
+    for (size_t i = from; i < to; i++) {
+        trend = trend || d->scenario[i].trend < 0 || d->scenario[i].trend > 0;
+        sd = sd || d->scenario[i].sd;
+    }
+    if (sd) {
+        table_cell(c, "sd of a response");
+        for (size_t i = from; i < to; i++) {
+            add_sd(c, d, &d->scenario[i]);
+        }
+    }
+    if (trend) {
+        text_addf(table_open(c), "trend a %s%s", d->time_unit,
+                  d->type == ENDPOINT_BINARY ? " (logit)" : "");
+        table_next(c);
+        for (size_t i = from; i < to; i++) {
+            say_number(table_open(c), d->scenario[i].trend);
+            table_next(c);
+        }
+    }
+}
+
 static void scenario_table(struct text *out, const struct design *d, size_t from, size_t to)
 {
     struct table *c = table_new();
@@ -221,6 +266,7 @@ static void scenario_table(struct text *out, const struct design *d, size_t from
             table_cell(c, !m ? "varies" : level < 0 ? "none" : d->level[level].label);
         }
     }
+    scenario_extras(c, d, from, to);
     table_cell(c, "for error rates");
     for (size_t i = from; i < to; i++) {
         table_cell(c, d->scenario[i].is_null ? "null" : "");
