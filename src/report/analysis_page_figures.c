@@ -95,7 +95,7 @@ static void response_words(struct text *out, const struct analysis_report *r)
                             "intervals from the spread at that level alone.");
     page_paragraph(out, NULL,
                    "Diamonds are the posterior means with 95% posterior intervals. They borrow "
-                   "from the other levels through the curve, and from the priors.");
+                   "from the other levels through the model, and from the priors.");
     if (r->a->curve.points > 0)
         page_paragraph(out, NULL,
                        "The line and its band continue the curve between the levels "
@@ -352,7 +352,7 @@ static void decisions_figure(struct text *out, struct sheet *s)
     page_figure_beside(out);
     decisions_words(out, s->r);
     page_figure_below(out);
-    page_table(out, table_decisions(s->r),
+    page_table(out, table_decisions(s->r, false),
                "Decisions, condition by condition. They are read in order; the first that is in "
                "force and met acts. MC error: Monte Carlo standard error of the value.");
     page_figure_close(out);

@@ -142,12 +142,27 @@ struct digits digits_condition(const struct condition *c, const struct condition
     return (struct digits){decimals < 3 ? 3 : decimals > 5 ? 5 : decimals, 0};
 }
 
+/* The design's own words: "pr_gain, ED90". */
+static void add_brief(struct text *out, const struct design *d, const struct condition *c)
+{
+    text_add(out, c->measure->key);
+    if (c->target >= 0)
+        text_addf(out, ", %s", d->target[c->target].name);
+    else if (c->level == LEVEL_ANY)
+        text_add(out, ", any");
+    else if (c->level >= 0)
+        text_addf(out, ", %s", d->level[c->level].label);
+}
+
 static void condition_row(struct table *t, const struct analysis_report *r, const char *name,
                           const struct condition *c, const struct condition_result *x, bool applies)
 {
     char s[NUMBER_CHARS];
     table_cell(t, name);
-    c->measure->sentence(c, r->d, table_open(t));
+    if (brief)
+        add_brief(table_open(t), r->d, c);
+    else
+        c->measure->sentence(c, r->d, table_open(t));
     table_next(t);
     table_cell(t, x->level >= 0 ? r->d->level[x->level].label : "\xE2\x80\x93");
     figure_probability(table_open(t), x->value, digits_condition(c, x));
@@ -162,23 +177,24 @@ static void condition_row(struct table *t, const struct analysis_report *r, cons
 }
 
 static void conditions_rows(struct table *t, const struct analysis_report *r, const char *name,
-                            const struct conditions *when, const struct decision_result *x)
+                            const struct conditions *when, const struct decision_result *x,
+                            bool brief)
 {
     struct text first = TEXT_INIT;
     text_add(&first, name);
     if (when->join != JOIN_ONE)
         text_add(&first, when->join == JOIN_ALL ? ", all of" : ", any of");
     for (size_t i = 0; i < when->count; i++)
-        condition_row(t, r, text_s(&first), &when->list[i], &x->condition[i], x->applies);
+        condition_row(t, r, text_s(&first), &when->list[i], &x->condition[i], x->applies, brief);
     text_release(&first);
 }
 
-struct table *table_decisions(const struct analysis_report *r)
+struct table *table_decisions(const struct analysis_report *r, bool brief)
 {
     struct table *t = table_new();
     table_column(t, "Decision", false);
     table_column(t, "Measure", false);
-    table_column(t, "Level", false);
+    table_column(t, "Looked at", false);
     table_column(t, "Value", true);
     table_column(t, "MC error", true);
     table_column(t, "Threshold", true);
@@ -187,10 +203,10 @@ struct table *table_decisions(const struct analysis_report *r)
     for (size_t i = 0; i < r->a->decisions; i++) {
         text_clear(&name);
         text_addf(&name, "%zu. %s", i + 1, action_words(r->d->decision[i].action));
-        conditions_rows(t, r, text_s(&name), &r->d->decision[i].when, &r->a->decision[i]);
+        conditions_rows(t, r, text_s(&name), &r->d->decision[i].when, &r->a->decision[i], brief);
     }
     if (r->a->final_success.condition)
-        conditions_rows(t, r, "Final success", &r->d->final_success, &r->a->final_success);
+        conditions_rows(t, r, "Final success", &r->d->final_success, &r->a->final_success, brief);
     text_release(&name);
     return t;
 }
@@ -212,20 +228,27 @@ static bool is_fixed(const struct parameter_result *x)
 static void spread_cells(struct table *t, const struct parameter_result *x)
 {
     const double v[] = {x->value.mean, x->value.sd, x->value.q025, x->value.q50, x->value.q975};
-    const bool fixed = is_fixed(x);
     const struct digits g = digits_for(x->diag.mcse_mean, fabs(x->value.q975), 4);
-    for (size_t i = 0; i < sizeof v / sizeof v[0]; i++) {
-        if (fixed && i == 1)
-            table_cell(t, "fixed");
-        else
-            number_cell(t, fixed && i > 0 ? NAN : v[i], fixed ? (struct digits){0, 6} : g);
-    }
+    for (size_t i = 0; i < sizeof v / sizeof v[0]; i++)
+        number_cell(t, v[i], g);
+}
+
+static void fixed_cells(struct table *t, const struct parameter_result *x)
+{
+    char s[NUMBER_CHARS];
+    table_cell(t, number_shortest(s, x->value.mean));
+    table_cell(t, "fixed");
+    for (size_t i = 0; i < 3; i++)
+        table_cell(t, "\xE2\x80\x93");
 }
 
 static void parameter_row(struct table *t, const struct parameter_result *x)
 {
     table_cell(t, x->name);
-    spread_cells(t, x);
+    if (is_fixed(x))
+        fixed_cells(t, x);
+    else
+        spread_cells(t, x);
     number_cell(t, x->diag.rhat, (struct digits){3, 0});
     number_cell(t, x->diag.ess_bulk, (struct digits){0, 0});
     number_cell(t, x->diag.ess_tail, (struct digits){0, 0});

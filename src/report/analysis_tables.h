@@ -13,7 +13,8 @@ struct table *table_levels(const struct analysis_report *r, const char *const *k
 struct table *table_targets(const struct analysis_report *r);
 /* One target by level: Pr(is the target), Pr(meets it), and before any data where known. */
 struct table *table_target(const struct analysis_report *r, size_t target);
-struct table *table_decisions(const struct analysis_report *r); /* one row a condition */
+/* One row a condition; brief: the measure by its key, not in words. */
+struct table *table_decisions(const struct analysis_report *r, bool brief);
 struct table *table_parameters(const struct analysis_report *r);
 
 /* "Placebo (control)", "80 mg (closed)". */

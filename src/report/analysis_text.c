@@ -5,16 +5,23 @@
 
 #include "report/analysis_tables.h"
 #include "report/analysis_words.h"
-#include "report/figures.h"
+#include "report/wrap.h"
 
 static void heading(struct text *out, const char *s)
 {
     text_addf(out, "\n%s\n", s);
 }
 
-static void end_line(struct text *out)
+/* One paragraph of words, wrapped. */
+typedef void words_fn(struct text *out, const struct analysis_report *r);
+
+static void paragraph(struct text *out, const char *first, const struct analysis_report *r,
+                      words_fn *words)
 {
-    text_add(out, "\n");
+    struct text t = TEXT_INIT;
+    words(&t, r);
+    wrap_add(out, first, text_s(&t));
+    text_release(&t);
 }
 
 static void add_table(struct text *out, struct table *t)
@@ -25,30 +32,34 @@ static void add_table(struct text *out, struct table *t)
 
 static void indented(struct text *out, const char *sentence)
 {
-    text_addf(out, "  - %s\n", sentence);
+    wrap_add(out, "  - ", sentence);
 }
 
-static void head(struct text *out, const struct analysis_report *r)
+static void occasion(struct text *out, const struct analysis_report *r)
 {
-    struct text cut = TEXT_INIT;
-    text_addf(out, "%s\n", r->d->title);
     words_occasion(out, r);
-    words_cut(&cut, r);
-    if (cut.length > 0)
-        text_addf(out, ", data cut at %s", text_s(&cut));
-    text_release(&cut);
+    if (r->data->cut_text) {
+        text_add(out, ", data cut at ");
+        words_cut(out, r);
+    }
     text_add(out, ". ");
     words_subjects(out, r);
-    end_line(out);
 }
 
 static void recommendation(struct text *out, const struct analysis_report *r)
 {
+    text_addf(out, "Recommendation: %s. ", words_recommendation(r));
+    words_why(out, r);
+}
+
+static void head(struct text *out, const struct analysis_report *r)
+{
+    wrap_add(out, "", r->d->title);
+    paragraph(out, "", r, occasion);
     if (!r->a->diagnostics.trusted)
         text_add(out, "\n*** " NOT_TO_BE_USED " ***\n");
-    text_addf(out, "\nRecommendation: %s. ", words_recommendation(r));
-    words_why(out, r);
-    end_line(out);
+    text_add(out, "\n");
+    paragraph(out, "", r, recommendation);
 }
 
 static void levels(struct text *out, const struct analysis_report *r)
@@ -67,9 +78,10 @@ static void targets(struct text *out, const struct analysis_report *r)
     heading(out, "Probability that a level is the target");
     add_table(out, table_targets(r));
     for (size_t t = 0; t < r->a->targets; t++) {
-        text_add(out, "  ");
-        words_selection(out, r, t);
-        end_line(out);
+        struct text s = TEXT_INIT;
+        words_selection(&s, r, t);
+        wrap_add(out, "  ", text_s(&s));
+        text_release(&s);
     }
 }
 
@@ -78,7 +90,7 @@ static void decisions(struct text *out, const struct analysis_report *r)
     if (r->a->decisions == 0 && !r->a->final_success.condition)
         return;
     heading(out, "Decisions");
-    add_table(out, table_decisions(r));
+    add_table(out, table_decisions(r, true));
 }
 
 static void computation(struct text *out, const struct analysis_report *r)
@@ -86,9 +98,7 @@ static void computation(struct text *out, const struct analysis_report *r)
     heading(out, "Parameters");
     add_table(out, table_parameters(r));
     heading(out, "Computation");
-    text_add(out, "  ");
-    words_computation(out, r);
-    end_line(out);
+    paragraph(out, "  ", r, words_computation);
 }
 
 static void cautions(struct text *out, const struct analysis_report *r)
@@ -104,7 +114,6 @@ static void cautions(struct text *out, const struct analysis_report *r)
 void analysis_text(struct text *out, const struct analysis_report *r)
 {
     head(out, r);
-    recommendation(out, r);
     levels(out, r);
     targets(out, r);
     decisions(out, r);

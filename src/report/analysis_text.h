@@ -6,7 +6,7 @@
 #include "base/text.h"
 #include "report/analysis_report.h"
 
-/* Appends the tables; no colour, no line is wrapped. */
+/* Appends words (wrapped) and tables (as wide as they need); no colour. */
 void analysis_text(struct text *out, const struct analysis_report *r);
 
 #endif

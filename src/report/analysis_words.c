@@ -345,27 +345,6 @@ static void dropout_reasons(struct reasons *w, const struct analysis_report *r)
     reason_take(w, &t);
 }
 
-/* Levels without outcomes, in one sentence however many there are. */
-static void empty_level_reasons(struct reasons *w, const struct analysis_report *r)
-{
-    struct text t = TEXT_INIT;
-    size_t empty = 0;
-    for (size_t k = 0; k < r->a->levels; k++) {
-        if (r->data->by_level.n[k] > 0)
-            continue;
-        if (empty < 5)
-            text_addf(&t, "%s%s", empty ? ", " : "No outcomes yet at ", r->d->level[k].label);
-        empty++;
-    }
-    if (empty > 5)
-        text_addf(&t, " and %zu more", empty - 5);
-    if (empty > 0) {
-        text_add(&t, ": what is said there comes from the curve and the priors alone.");
-        reason(w, text_s(&t));
-    }
-    text_release(&t);
-}
-
 size_t words_distrust(struct text *out, const struct analysis_report *r,
                       void (*each)(struct text *out, const char *sentence))
 {
@@ -373,6 +352,5 @@ size_t words_distrust(struct text *out, const struct analysis_report *r,
     computation_reasons(&w, r);
     pending_reasons(&w, r);
     dropout_reasons(&w, r);
-    empty_level_reasons(&w, r);
     return w.count;
 }

@@ -327,6 +327,14 @@ static void fill_draws(struct fixture *f)
                                 .parameter = parameter};
 }
 
+static void warn(struct fixture *f, const char *sentence)
+{
+    struct analysis_diagnostics *g = &f->a.diagnostics;
+    g->warnings = 1;
+    g->warning = keep(f, mem_new(1, sizeof *g->warning));
+    g->warning[0] = words(f, sentence);
+}
+
 /* ---- the cases ---- */
 
 static void itch_decisions(struct fixture *f)
@@ -404,6 +412,7 @@ static void days(struct fixture *f)
     f->a.level[5].next_share = 0;
     f->a.level[5].pr_target[0] = f->a.level[5].pr_meets[0] = 0;
     f->a.target[0].close = true;
+    warn(f, "No outcomes yet at 4 days.");
 }
 
 static void many(struct fixture *f)
@@ -429,12 +438,9 @@ static void many(struct fixture *f)
 
 static void distrust(struct fixture *f)
 {
-    struct analysis_diagnostics *g = &f->a.diagnostics;
-    g->trusted = false;
-    g->max_rhat = 1.31;
-    g->warnings = 1;
-    g->warning = keep(f, mem_new(1, sizeof *g->warning));
-    g->warning[0] = words(f, "R-hat of ED50 is 1.31, above 1.01.");
+    f->a.diagnostics.trusted = false;
+    f->a.diagnostics.max_rhat = 1.31;
+    warn(f, "R-hat of ED50 is 1.31, above 1.01.");
     f->a.recommendation = RECOMMEND_UNDETERMINED;
     for (size_t k = 0; k < f->a.levels; k++)
         f->a.level[k].next_share = NAN;
