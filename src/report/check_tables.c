@@ -211,10 +211,10 @@ static void add_sd(struct table *c, const struct design *d, const struct scenari
         low = fmin(low, s->sd[k]);
         high = fmax(high, s->sd[k]);
     }
-    say_number(table_open(c), low);
+    add_shortest_number(table_open(c), low);
     if (high > low) {
         text_add(table_open(c), " to ");
-        say_number(table_open(c), high);
+        add_shortest_number(table_open(c), high);
     }
     table_next(c);
 }
@@ -238,7 +238,7 @@ static void scenario_extras(struct table *c, const struct design *d, size_t from
                   d->type == ENDPOINT_BINARY ? " (logit)" : "");
         table_next(c);
         for (size_t i = from; i < to; i++) {
-            say_number(table_open(c), d->scenario[i].trend);
+            add_shortest_number(table_open(c), d->scenario[i].trend);
             table_next(c);
         }
     }

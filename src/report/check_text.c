@@ -45,7 +45,7 @@ static void question_words(struct text *out, const struct design *d)
         text_addf(out, "%s%s", joint, d->target[i].name);
     }
     text_addf(out, ", judged by \"%s\" in up to ", d->endpoint_name);
-    say_number(out, d->subjects);
+    add_shortest_number(out, d->subjects);
     text_add(out, " subjects?");
 }
 
@@ -140,11 +140,11 @@ static void add_decisions(const struct writer *w)
 static void computing_words(struct text *out, const struct design *d)
 {
     text_add(out, "Each fit makes ");
-    say_number(out, d->draws);
+    add_shortest_number(out, d->draws);
     text_add(out, " draws in a simulation, and live up to ");
-    say_number(out, d->max_draws);
+    add_shortest_number(out, d->max_draws);
     text_add(out, ", until every probability has a Monte Carlo standard error of at most ");
-    say_number(out, d->precision);
+    add_shortest_number(out, d->precision);
     text_addf(out, ". Seed %llu.", (unsigned long long)d->seed);
     if (d->sensitivities > 0) {
         text_addf(out, " %zu more model%s for sensitivity, deciding nothing.", d->sensitivities,
@@ -159,7 +159,7 @@ static void add_scenarios(const struct writer *w)
         text_add(w->out, "  None. Live analysis needs none; simulation does.\n");
     } else {
         text_add(w->out, "  ");
-        say_number(w->out, w->r->d->trials);
+        add_shortest_number(w->out, w->r->d->trials);
         text_add(w->out, " simulated trials each.\n\n");
         check_table_scenarios(w->out, w->r);
     }

@@ -5,17 +5,9 @@
 #include <math.h>
 #include <string.h>
 
-#include "base/number.h"
-
-void say_number(struct text *out, double x)
-{
-    char s[NUMBER_CHARS];
-    text_add(out, number_shortest(s, x));
-}
-
 void say_value(struct text *out, double x, const char *unit)
 {
-    say_number(out, x);
+    add_shortest_number(out, x);
     if (unit && *unit) {
         text_addf(out, " %s", unit);
     }
@@ -25,7 +17,7 @@ static void add_end(struct text *out, const char *word, double x)
 {
     if (isfinite(x)) {
         text_addf(out, ", %s ", word);
-        say_number(out, x);
+        add_shortest_number(out, x);
     }
 }
 
@@ -34,13 +26,13 @@ void say_prior(struct text *out, const struct prior *p)
 {
     if (prior_is_fixed(p)) {
         text_add(out, "fixed at ");
-        say_number(out, p->arg[0]);
+        add_shortest_number(out, p->arg[0]);
         return;
     }
     text_add(out, p->family->sentence);
     for (size_t i = 0; i < PRIOR_ARGS && p->family->args[i].key; i++) {
         text_addf(out, ", %s ", p->family->args[i].key);
-        say_number(out, p->arg[i]);
+        add_shortest_number(out, p->arg[i]);
     }
     add_end(out, "above", p->above);
     add_end(out, "below", p->below);
@@ -56,9 +48,9 @@ void say_endpoint(struct text *out, const struct design *d)
               d->higher_is_better ? "higher" : "lower");
     if (d->has_range) {
         text_add(out, ", from ");
-        say_number(out, d->range[0]);
+        add_shortest_number(out, d->range[0]);
         text_add(out, " to ");
-        say_number(out, d->range[1]);
+        add_shortest_number(out, d->range[1]);
     }
     if (d->observed_after > 0) {
         text_add(out, "; observed ");
@@ -88,7 +80,7 @@ void say_reference(struct text *out, const struct design *d)
                   d->reference_level == d->control ? ", the control" : ", the reference");
     } else {
         text_add(out, "the performance goal ");
-        say_number(out, d->reference_number);
+        add_shortest_number(out, d->reference_number);
     }
     text_add(out, ".");
 }
@@ -121,7 +113,7 @@ void say_target(struct text *out, const struct design *d, const struct target *t
     if (t->by_meets) {
         text_add(out, "; selected: the lowest active level that meets it with probability at "
                       "least ");
-        say_number(out, t->meets);
+        add_shortest_number(out, t->meets);
     } else {
         text_add(out, "; selected: the level that is most probably it, none if none is more "
                       "probable than not");
@@ -137,7 +129,7 @@ void say_conditions(struct text *out, const struct design *d, const struct condi
         }
         c->list[i].measure->sentence(&c->list[i], d, out);
         text_add(out, c->list[i].above ? " is above " : " is below ");
-        say_number(out, c->list[i].threshold);
+        add_shortest_number(out, c->list[i].threshold);
     }
 }
 
@@ -152,7 +144,7 @@ void say_decision(struct text *out, const struct design *d, const struct decisio
     }
     if (x->min_observed > 0) {
         text_add(out, "; needs ");
-        say_number(out, x->min_observed);
+        add_shortest_number(out, x->min_observed);
         text_add(out, " outcomes in hand");
     }
     if (x->action == ACTION_STOP_FUTILITY && !x->binding) {

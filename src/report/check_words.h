@@ -3,10 +3,10 @@
 #ifndef TERRACE_CHECK_WORDS_H
 #define TERRACE_CHECK_WORDS_H
 
+#include "analysis/row_words.h"
 #include "base/text.h"
 #include "design/design.h"
 
-void say_number(struct text *out, double x);                  /* the shortest form */
 void say_value(struct text *out, double x, const char *unit); /* "20 mg" */
 void say_prior(struct text *out, const struct prior *p);
 void say_endpoint(struct text *out, const struct design *d);

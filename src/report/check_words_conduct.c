@@ -19,7 +19,7 @@ static void add_ratio(struct text *out, const struct design *d)
 {
     for (size_t k = 0; k < d->levels; k++) {
         text_add(out, k ? " : " : "");
-        say_number(out, d->allocation.ratio[k]);
+        add_shortest_number(out, d->allocation.ratio[k]);
     }
 }
 
@@ -28,7 +28,7 @@ void say_start(struct text *out, const struct design *d)
     const struct allocation *a = &d->allocation;
     if (a->adapts && a->start_per_level > 0) {
         text_add(out, "At least the first ");
-        say_number(out, a->start_per_level * (double)d->levels);
+        add_shortest_number(out, a->start_per_level * (double)d->levels);
         text_add(out, " subjects are");
     } else {
         text_add(out, a->adapts ? "Until the first adapted shares are in force subjects are"
@@ -44,7 +44,7 @@ void say_start(struct text *out, const struct design *d)
     }
     if (a->block > 1) {
         text_add(out, ", in permuted blocks of ");
-        say_number(out, a->block);
+        add_shortest_number(out, a->block);
     } else {
         text_add(out, ", each on its own");
     }
@@ -60,11 +60,11 @@ static void add_formula(struct text *out, const struct design *d)
         text_add(out, ", raised to n/2N (n randomized so far of N subjects)");
     } else if (a->power < 1 || a->power > 1) {
         text_add(out, ", raised to the power ");
-        say_number(out, a->power);
+        add_shortest_number(out, a->power);
     }
     if (a->information > 0) {
         text_add(out, ", times the variance of its response per subject to the power ");
-        say_number(out, a->information);
+        add_shortest_number(out, a->information);
     }
     text_add(out, ".");
 }
@@ -77,7 +77,7 @@ static void add_bounds(struct text *out, const struct design *d, const double *b
     for (size_t k = 0; k < d->levels; k++) {
         if (design_is_active(d, k) && (bound[k] < idle || bound[k] > idle)) {
             text_addf(out, "%s %s ", any ? "," : word, d->level[k].label);
-            say_number(out, bound[k]);
+            add_shortest_number(out, bound[k]);
             any = true;
         }
     }
@@ -91,7 +91,7 @@ static void add_control_share(struct text *out, const struct design *d)
         text_add(out, " The control gets as much as the largest active level.");
     } else if (a->control_kind == CONTROL_SHARE_NUMBER && d->control >= 0) {
         text_add(out, " The control keeps the share ");
-        say_number(out, a->control_share);
+        add_shortest_number(out, a->control_share);
         text_add(out, ".");
     }
 }
@@ -106,7 +106,7 @@ void say_adapt(struct text *out, const struct design *d)
     add_formula(out, d);
     if (a->drop_below > 0) {
         text_add(out, " A share below ");
-        say_number(out, a->drop_below);
+        add_shortest_number(out, a->drop_below);
         text_add(out, " becomes 0 until a later analysis earns it back.");
     }
     add_bounds(out, d, a->at_least, 0, " Least shares:");
@@ -114,7 +114,7 @@ void say_adapt(struct text *out, const struct design *d)
     add_control_share(out, d);
     if (a->urn) {
         text_add(out, " Levels are drawn from a mass weighted urn (mass ");
-        say_number(out, a->urn_mass);
+        add_shortest_number(out, a->urn_mass);
         text_add(out, ").");
     } else {
         text_add(out, " Levels are drawn independently from the shares.");
@@ -137,18 +137,18 @@ void say_point(struct text *out, const struct design *d, double point)
 {
     const char *word = counted_word(d);
     if (word) {
-        say_number(out, point);
+        add_shortest_number(out, point);
         text_addf(out, " %s", word);
     } else {
         text_addf(out, "%s ", d->time_unit);
-        say_number(out, point);
+        add_shortest_number(out, point);
     }
 }
 
 void say_analyses(struct text *out, const struct design *d)
 {
     const struct analyses *a = &d->analyses;
-    say_number(out, d->subjects);
+    add_shortest_number(out, d->subjects);
     text_add(out, " subjects at most. ");
     if (a->count == 0) {
         text_add(out, "No interim analysis is planned; one analysis of all data at the end.");
@@ -161,9 +161,9 @@ void say_analyses(struct text *out, const struct design *d)
                                                : "time since opening");
     if (a->first_at > 0) {
         text_add(out, ": first at ");
-        say_number(out, a->first_at);
+        add_shortest_number(out, a->first_at);
         text_add(out, ", then every ");
-        say_number(out, a->every);
+        add_shortest_number(out, a->every);
     }
     if (a->open_ended) {
         text_add(out, ", while enrolment is open");
@@ -187,11 +187,11 @@ void say_accrual(struct text *out, const struct design *d)
     text_add(out, "Accrual:");
     for (size_t i = 0; i < a->count; i++) {
         text_add(out, i ? ", then " : " ");
-        say_number(out, a->steps[i].rate);
+        add_shortest_number(out, a->steps[i].rate);
         text_addf(out, " subjects a %s", d->time_unit);
         if (i > 0) {
             text_addf(out, " from %s ", d->time_unit);
-            say_number(out, a->steps[i].from);
+            add_shortest_number(out, a->steps[i].from);
         }
     }
     text_add(out, ".");
@@ -201,14 +201,14 @@ void say_dropout(struct text *out, const struct design *d)
 {
     if (all_equal(d->dropout, d->levels)) {
         text_add(out, "Dropout before the outcome: ");
-        say_number(out, 100 * d->dropout[0]);
+        add_shortest_number(out, 100 * d->dropout[0]);
         text_add(out, "% of subjects.");
         return;
     }
     text_add(out, "Dropout before the outcome by level:");
     for (size_t k = 0; k < d->levels; k++) {
         text_addf(out, "%s %s ", k ? "," : "", d->level[k].label);
-        say_number(out, 100 * d->dropout[k]);
+        add_shortest_number(out, 100 * d->dropout[k]);
         text_add(out, "%");
     }
     text_add(out, ".");
