@@ -154,61 +154,68 @@ static void add_brief(struct text *out, const struct design *d, const struct con
         text_addf(out, ", %s", d->level[c->level].label);
 }
 
-static void condition_row(struct table *t, const struct analysis_report *r, const char *name,
-                          const struct condition *c, const struct condition_result *x, bool applies)
+/* A table of conditions being filled. */
+struct rows {
+    struct table *t;
+    const struct analysis_report *r;
+    bool brief; /* the measure by its key, not in words */
+};
+
+static void condition_row(const struct rows *w, const char *name, const struct condition *c,
+                          const struct condition_result *x, bool applies)
 {
     char s[NUMBER_CHARS];
+    struct table *t = w->t;
     table_cell(t, name);
-    if (brief)
-        add_brief(table_open(t), r->d, c);
+    if (w->brief)
+        add_brief(table_open(t), w->r->d, c);
     else
-        c->measure->sentence(c, r->d, table_open(t));
+        c->measure->sentence(c, w->r->d, table_open(t));
     table_next(t);
-    table_cell(t, x->level >= 0 ? r->d->level[x->level].label : "\xE2\x80\x93");
+    table_cell(t, x->level >= 0 ? w->r->d->level[x->level].label : "\xE2\x80\x93");
     figure_probability(table_open(t), x->value, digits_condition(c, x));
     table_next(t);
     figure_error(table_open(t), x->mcse);
     table_next(t);
     text_add(table_open(t), c->above ? "above " : "below ");
     table_cell(t, number_shortest(s, c->threshold));
-    text_add(table_open(t), verdict_words(r, applies, x->met));
+    text_add(table_open(t), verdict_words(w->r, applies, x->met));
     text_add(table_open(t), x->close ? ", close" : "");
     table_cell(t, x->imprecise ? ", imprecise" : "");
 }
 
-static void conditions_rows(struct table *t, const struct analysis_report *r, const char *name,
-                            const struct conditions *when, const struct decision_result *x,
-                            bool brief)
+static void condition_rows(const struct rows *w, const char *name, const struct conditions *when,
+                           const struct decision_result *x)
 {
     struct text first = TEXT_INIT;
     text_add(&first, name);
     if (when->join != JOIN_ONE)
         text_add(&first, when->join == JOIN_ALL ? ", all of" : ", any of");
     for (size_t i = 0; i < when->count; i++)
-        condition_row(t, r, text_s(&first), &when->list[i], &x->condition[i], x->applies, brief);
+        condition_row(w, text_s(&first), &when->list[i], &x->condition[i], x->applies);
     text_release(&first);
 }
 
 struct table *table_decisions(const struct analysis_report *r, bool brief)
 {
-    struct table *t = table_new();
-    table_column(t, "Decision", false);
-    table_column(t, "Measure", false);
-    table_column(t, "Looked at", false);
-    table_column(t, "Value", true);
-    table_column(t, "MC error", true);
-    table_column(t, "Threshold", true);
-    table_column(t, "Verdict", false);
+    const struct rows w = {table_new(), r, brief};
     struct text name = TEXT_INIT;
+    table_column(w.t, "Decision", false);
+    table_column(w.t, "Measure", false);
+    table_column(w.t, "Looked at", false);
+    table_column(w.t, "Value", true);
+    table_column(w.t, "MC error", true);
+    table_column(w.t, "Threshold", true);
+    table_column(w.t, "Verdict", false);
     for (size_t i = 0; i < r->a->decisions; i++) {
         text_clear(&name);
         text_addf(&name, "%zu. %s", i + 1, action_words(r->d->decision[i].action));
-        conditions_rows(t, r, text_s(&name), &r->d->decision[i].when, &r->a->decision[i], brief);
+        condition_rows(&w, text_s(&name), &r->d->decision[i].when, &r->a->decision[i]);
     }
     if (r->a->final_success.condition)
-        conditions_rows(t, r, "Final success", &r->d->final_success, &r->a->final_success, brief);
+        condition_rows(&w, "Final success", &r->d->final_success, &r->a->final_success);
     text_release(&name);
-    return t;
+    return w.t;
 }
 
 /* ---- parameters ---- */
