@@ -2,6 +2,7 @@
 /* tally.c: on which draws a level is, or meets, each target: counting, block by block. */
 #include "analysis/tally.h"
 
+#include <emmintrin.h> /* SSE2: every x86-64 has it */
 #include <math.h>
 #include <stdint.h>
 #include <string.h>
@@ -16,7 +17,8 @@ enum { TILE = 128 };
 struct tally {
     const struct design *d;
     /* of the tile at hand; s x response on the scale asked for */
-    double *sm; /* [level][TILE] */
+    double *sm;   /* [level][TILE] */
+    double *tail; /* [level][TILE]: the last tile as it is, filled up */
     double best_active[TILE], best_all[TILE], reference[TILE], bar[TILE];
     uint64_t found[TILE];         /* all bits where a lower level met the target */
     uint64_t *n_target, *n_meets; /* [target * levels + level] */
@@ -27,6 +29,7 @@ struct tally *tally_new(const struct design *d)
     struct tally *w = mem_new(1, sizeof *w);
     w->d = d;
     w->sm = mem_aligned(d->levels * TILE, sizeof *w->sm);
+    w->tail = mem_aligned(d->levels * TILE, sizeof *w->tail);
     w->n_target = mem_new(d->targets * d->levels, sizeof *w->n_target);
     w->n_meets = mem_new(d->targets * d->levels, sizeof *w->n_meets);
     return w;
@@ -37,6 +40,7 @@ void tally_free(struct tally *w)
     if (!w)
         return;
     mem_free(w->sm);
+    mem_free(w->tail);
     mem_free(w->n_target);
     mem_free(w->n_meets);
     mem_free(w);
@@ -44,10 +48,26 @@ void tally_free(struct tally *w)
 
 /* ---- one tile ---- */
 
+static void fill(double *x, double value)
+{
+    for (size_t i = 0; i < TILE; i++)
+        x[i] = value;
+}
+
 static void turn(double *restrict sm, const double *restrict m, double s)
 {
     for (size_t i = 0; i < TILE; i++)
         sm[i] = s * m[i];
+}
+
+static void turn_and_raise(double *restrict sm, double *restrict best, const double *restrict m,
+                           double s)
+{
+    for (size_t i = 0; i < TILE; i++) {
+        const double x = s * m[i];
+        sm[i] = x;
+        best[i] = x > best[i] ? x : best[i];
+    }
 }
 
 static void raise_to(double *restrict best, const double *restrict sm)
@@ -56,47 +76,36 @@ static void raise_to(double *restrict best, const double *restrict sm)
         best[i] = sm[i] > best[i] ? sm[i] : best[i];
 }
 
-static void fill(double *x, double value)
-{
-    for (size_t i = 0; i < TILE; i++)
-        x[i] = value;
-}
-
-/* s m of every level for `count` draws from `first` on. */
-static void load_levels(struct tally *w, const struct draws *draws, bool link, size_t first,
-                        size_t count)
-{
-    const double s = design_sign(w->d);
-    const double *m = (link ? draws->link : draws->response) + first;
-    for (size_t k = 0; k < w->d->levels; k++, m += draws->stride) {
-        double *sm = w->sm + k * TILE;
-        if (count == TILE) {
-            turn(sm, m, s);
-            continue;
-        }
-        for (size_t i = 0; i < TILE; i++)
-            sm[i] = i < count ? s * m[i] : 0;
-    }
-}
-
-static void load_best(struct tally *w, const bool *open)
+/* s m of every level, and the best of them. `m` is the tile's first draw of the first level. */
+static void load_rows(struct tally *w, const bool *open, const double *m, size_t stride)
 {
     const struct design *d = w->d;
+    const double s = design_sign(d);
     fill(w->best_active, -INFINITY);
-    for (size_t k = 0; k < d->levels; k++)
+    for (size_t k = 0; k < d->levels; k++, m += stride)
         if (open[k] && design_is_active(d, k))
-            raise_to(w->best_active, w->sm + k * TILE);
+            turn_and_raise(w->sm + k * TILE, w->best_active, m, s);
+        else
+            turn(w->sm + k * TILE, m, s);
     memcpy(w->best_all, w->best_active, sizeof w->best_all);
     if (d->control >= 0)
         raise_to(w->best_all, w->sm + (size_t)d->control * TILE);
 }
 
+/* The tile of draws from `first` on. The last one is copied and filled up with zeros. */
 static void load_tile(struct tally *w, const struct draws *draws, const bool *open, bool link,
                       size_t first)
 {
-    const size_t left = draws->n - first, count = left < TILE ? left : TILE;
-    load_levels(w, draws, link, first, count);
-    load_best(w, open);
+    const size_t left = draws->n - first;
+    const double *m = (link ? draws->link : draws->response) + first;
+    if (left >= TILE) {
+        load_rows(w, open, m, draws->stride);
+        return;
+    }
+    for (size_t k = 0; k < w->d->levels; k++)
+        for (size_t i = 0; i < TILE; i++)
+            w->tail[k * TILE + i] = i < left ? m[k * draws->stride + i] : 0;
+    load_rows(w, open, w->tail, TILE);
 }
 
 /* The bars of a target for the tile; infinite where the tile has no draw. */
@@ -117,29 +126,53 @@ static void load_bar(struct tally *w, const struct target *t, size_t count)
         w->bar[i] = INFINITY;
 }
 
-/* Masks are all bits or none, so that subtracting one counts one. */
-static void count_level(const double *restrict sm, const double *restrict bar,
-                        uint64_t *restrict found, uint64_t *n_meets, uint64_t *n_target)
+/* Where x >= bar, for 16 draws: a byte each, all bits or none. */
+static __m128i meets_16(const double *x, const double *bar)
 {
-    uint64_t all = 0, first = 0;
-    for (size_t i = 0; i < TILE; i++) {
-        const uint64_t meets = sm[i] >= bar[i] ? UINT64_MAX : 0;
-        all -= meets;
-        first -= meets & ~found[i];
-        found[i] |= meets;
+    __m128i pair[4];
+    for (size_t i = 0; i < 4; i++) {
+        const __m128d a = _mm_cmpge_pd(_mm_loadu_pd(x + 4 * i), _mm_loadu_pd(bar + 4 * i));
+        const __m128d b = _mm_cmpge_pd(_mm_loadu_pd(x + 4 * i + 2), _mm_loadu_pd(bar + 4 * i + 2));
+        pair[i] = _mm_castps_si128(
+            _mm_shuffle_ps(_mm_castpd_ps(a), _mm_castpd_ps(b), _MM_SHUFFLE(2, 0, 2, 0)));
     }
-    *n_meets += all;
-    *n_target += first;
+    return _mm_packs_epi16(_mm_packs_epi32(pair[0], pair[1]), _mm_packs_epi32(pair[2], pair[3]));
+}
+
+/* Sum of 16 bytes. */
+static uint64_t sum_bytes(__m128i x)
+{
+    uint64_t half[2];
+    const __m128i sums = _mm_sad_epu8(x, _mm_setzero_si128());
+    memcpy(half, &sums, sizeof half);
+    return half[0] + half[1];
+}
+
+/* Subtracting a byte with all bits set counts one; a byte counts at most TILE / 16. */
+static void count_level(const double *sm, const double *bar, __m128i *found, uint64_t *n_meets,
+                        uint64_t *n_target)
+{
+    __m128i all = _mm_setzero_si128(), first = _mm_setzero_si128();
+    for (size_t i = 0; i < TILE / 16; i++) {
+        const __m128i meets = meets_16(sm + 16 * i, bar + 16 * i);
+        all = _mm_sub_epi8(all, meets);
+        first = _mm_sub_epi8(first, _mm_andnot_si128(found[i], meets));
+        found[i] = _mm_or_si128(found[i], meets);
+    }
+    *n_meets += sum_bytes(all);
+    *n_target += sum_bytes(first);
 }
 
 static void count_target(struct tally *w, const bool *open, size_t target)
 {
     const struct design *d = w->d;
-    memset(w->found, 0, sizeof w->found);
+    __m128i found[TILE / 16]; /* where a lower level met the target */
+    for (size_t i = 0; i < TILE / 16; i++)
+        found[i] = _mm_setzero_si128();
     for (size_t k = 0; k < d->levels; k++) {
         const size_t at = target * d->levels + k;
         if (open[k] && design_is_active(d, k))
-            count_level(w->sm + k * TILE, w->bar, w->found, &w->n_meets[at], &w->n_target[at]);
+            count_level(w->sm + k * TILE, w->bar, found, &w->n_meets[at], &w->n_target[at]);
     }
 }
 
