@@ -98,6 +98,8 @@ static double round_step(double x)
 struct axis axis_round(double low, double high, int ticks)
 {
     const double size = fabs(low) > fabs(high) ? fabs(low) : fabs(high);
+    if (!(size < 1e290) || (size > 0 && size < 1e-290))
+        return (struct axis){0, 1, 0.2}; /* beyond what can be drawn */
     if (!(high - low > 1e-12 * size)) {
         const double apart = size > 0 ? size / 10 : 1;
         low -= apart;

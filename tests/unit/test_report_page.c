@@ -141,6 +141,7 @@ static void a_fraction_is_relative_to_the_levels(void)
 {
     char *page = written(analysis_page, FIXTURE_ITCH);
     CU_ASSERT_EQUAL(markup_count(page, "relative to the levels studied"), 1); /* ED90 only */
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "90% of the largest active gain. This is relative"));
     mem_free(page);
 }
 

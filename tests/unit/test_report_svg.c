@@ -26,6 +26,10 @@ static void axes_have_round_ends(void)
     a = axis_round(0, 0, 5);
     CU_ASSERT_TRUE(a.low < 0 && a.high > 0);
     CU_ASSERT_DOUBLE_EQUAL(axis_at(&a, 100, 0, 0), 50, 1e-9);
+    a = axis_round(0, INFINITY, 5); /* must end, whatever it draws */
+    CU_ASSERT_TRUE(a.high > a.low && a.step > 0);
+    a = axis_round(0, 5e-324, 5);
+    CU_ASSERT_TRUE(a.high > a.low && a.step > 0);
 }
 
 static void levels_stand_to_scale_where_labels_fit(void)
