@@ -73,7 +73,8 @@ void figure_probability(struct text *out, double p, struct digits g)
     double half = 0.5;
     for (int i = 0; i < g.decimals; i++)
         half /= 10;
-    const bool low = p<half, high = p> 1 - half;
+    const bool low = p < half;
+    const bool high = p > 1 - half;
     if (low)
         text_add(out, "<");
     else if (high)
