@@ -1,0 +1,510 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* test_live_run.c: lengths, fallbacks, trust and what follows from them.
+ *
+ * This program brings a posterior of its own in place of the library's: independent normal draws
+ * whose convergence, doubts and second method follow a script, so that every path is walked. */
+#include <math.h>
+#include <string.h>
+
+#include "analysis/analysis.h"
+#include "analysis/live_run.h"
+#include "analysis/measures.h"
+#include "analysis/targets.h"
+#include "base/mem.h"
+#include "base/vecmath.h"
+#include "tiny_world.h"
+#include "unit.h"
+
+enum { LEVELS = 3, CALLS = 32, SECOND = 20000 };
+
+/* ---- the scripted posterior ---- */
+
+struct plan {
+    const struct design *d;
+};
+
+struct posterior {
+    const struct design *d;
+    double *x, *second;
+    size_t total;
+    bool slice;
+};
+
+static struct script {
+    double mean[LEVELS];       /* of the level responses, sd 1 */
+    size_t converges_at;       /* first length with a small R-hat */
+    size_t slice_converges_at; /* the same of the slice sampler */
+    bool doubtful, distrusted;
+    double shift, slice_shift; /* what the second method finds differs by this in level 2 */
+    size_t lengths[CALLS], calls;
+    bool by_slice[CALLS];
+} script;
+
+/* Normal draws, level by level independent; `salt` names the stream. */
+static double *normal_draws(size_t n, uint64_t salt, double shift)
+{
+    uint64_t state = salt;
+    double *x = mem_new(n * LEVELS, sizeof *x);
+    for (size_t i = 0; i < n; i++)
+        for (size_t k = 0; k < LEVELS; k++) {
+            const double u = ((double)tiny_random(&state, 1u << 30) + 0.5) / (1u << 30);
+            x[k * n + i] = script.mean[k] + (k == 2 ? shift : 0) + vm_normal_quantile(u);
+        }
+    return x;
+}
+
+enum status plan_new(struct plan **out, const struct design *d, const struct model *m,
+                     struct err *e)
+{
+    (void)m, (void)e;
+    *out = mem_new(1, sizeof **out);
+    (*out)->d = d;
+    return STATUS_OK;
+}
+
+void plan_free(struct plan *p)
+{
+    mem_free(p);
+}
+
+struct posterior *posterior_new(const struct plan *p)
+{
+    struct posterior *x = mem_new(1, sizeof *x);
+    x->d = p->d;
+    return x;
+}
+
+void posterior_free(struct posterior *p)
+{
+    mem_free(p->x);
+    mem_free(p->second);
+    mem_free(p);
+}
+
+enum status posterior_start(struct posterior *p, const struct level_data *data, struct rng_key key,
+                            struct err *e)
+{
+    (void)data, (void)key, (void)e;
+    p->slice = false;
+    return STATUS_OK;
+}
+
+void posterior_extend(struct posterior *p, size_t total)
+{
+    if (script.calls < CALLS) {
+        script.lengths[script.calls] = total;
+        script.by_slice[script.calls++] = p->slice;
+    }
+    mem_free(p->x);
+    p->x = normal_draws(total, 1, 0);
+    p->total = total;
+}
+
+void posterior_use_slice(struct posterior *p)
+{
+    p->slice = true;
+}
+
+bool posterior_is_slice(const struct posterior *p)
+{
+    return p->slice;
+}
+
+void posterior_simulated(struct posterior *p, size_t draws, bool *doubtful, bool *distrusted)
+{
+    posterior_extend(p, draws);
+    *doubtful = script.doubtful;
+    *distrusted = script.distrusted;
+}
+
+static struct draws rows_of(const double *x, size_t n, size_t chains)
+{
+    return (struct draws){
+        .n = n, .stride = n, .chains = chains, .levels = LEVELS, .link = x, .response = x};
+}
+
+struct draws posterior_draws(const struct posterior *p)
+{
+    return rows_of(p->x, p->total, CHAINS);
+}
+
+double posterior_kish(const struct posterior *p)
+{
+    return p->slice ? 1 : 0.9;
+}
+
+bool posterior_is_doubtful(const struct posterior *p)
+{
+    return script.doubtful && !p->slice;
+}
+
+void posterior_diagnose(const struct draws *d, int threads, struct convergence *out)
+{
+    const bool slice = script.by_slice[script.calls - 1];
+    const size_t at = slice ? script.slice_converges_at : script.converges_at;
+    (void)threads;
+    out[0] = (struct convergence){NAN, NAN, NAN, NAN}; /* a fixed parameter's row */
+    for (size_t k = 0; k < d->levels; k++) {
+        const double n = (double)d->n;
+        out[d->parameters + k] = (struct convergence){d->n >= at ? 1.001 : 1.02, n, n, 0.01};
+    }
+    out[d->parameters] = (struct convergence){NAN, NAN, NAN, NAN}; /* a constant level mean */
+}
+
+struct draws posterior_second(struct posterior *p, const char **name)
+{
+    mem_free(p->second);
+    p->second = normal_draws(SECOND, 2, p->slice ? script.slice_shift : script.shift);
+    *name = "quadrature";
+    return rows_of(p->second, SECOND, 1);
+}
+
+struct draws posterior_prior(struct posterior *p, size_t count, struct rng_key key)
+{
+    (void)key;
+    mem_free(p->x);
+    p->x = normal_draws(count, 3, 0);
+    p->total = count;
+    return rows_of(p->x, count, 1);
+}
+
+bool posterior_curve_at(const struct plan *p, const struct draws *d, double x, double *out)
+{
+    (void)p, (void)d, (void)x, (void)out;
+    return false;
+}
+
+/* ---- a world ---- */
+
+static const struct curve curve = {.key = "scripted", .kind = CURVE_FREE};
+
+struct world {
+    struct tiny_world w;
+    struct decision decision;
+    struct condition condition;
+    struct level_data data;
+    struct analyst *analyst;
+    struct analysis a;
+    struct analysis_request r;
+};
+
+/* Pr(gain of C > 0) is 0.760 where the means are 0, 0, 1. */
+static void start(struct world *x)
+{
+    script = (struct script){
+        .mean = {0, 0, 1},
+          .converges_at = 0, .slice_converges_at = 0
+    };
+    tiny_init(&x->w, LEVELS, 0);
+    tiny_target(&x->w, &rule_optimal, 0, OF_BEST);
+    x->w.d.model.curve = &curve;
+    x->condition = (struct condition){
+        .measure = &measure_pr_gain, .target = -1, .level = 2, .above = true, .threshold = 0.5};
+    x->decision = (struct decision){
+        .action = ACTION_STOP_SUCCESS, .when = {JOIN_ONE, 1, &x->condition},
+             .binding = true
+    };
+    x->w.d.decision = &x->decision;
+    x->w.d.decisions = 1;
+    x->w.d.precision = 0.02;
+    x->w.d.max_draws = 30000;
+    level_data_init(&x->data, LEVELS);
+    for (size_t k = 0; k < LEVELS; k++)
+        x->data.n[k] = x->data.randomized[k] = 10;
+    x->r = (struct analysis_request){
+        .number = 1, .point = 30, .observed = 30, .randomized = 30, .live = true, .threads = 2};
+}
+
+static enum status run(struct world *x)
+{
+    struct err e = ERR_INIT;
+    if (analyst_new(&x->analyst, &x->w.d, &e) != STATUS_OK)
+        return STATUS_INPUT;
+    analysis_init(&x->a, &x->w.d);
+    const enum status status = analysis_run(&x->a, x->analyst, &x->data, &x->r, &e);
+    err_release(&e);
+    return status;
+}
+
+static void release(struct world *x)
+{
+    analyst_free(x->analyst);
+    analysis_release(&x->a);
+    level_data_release(&x->data);
+}
+
+static bool warned(const struct world *x, const char *part)
+{
+    for (size_t i = 0; i < x->a.diagnostics.warnings; i++)
+        if (strstr(x->a.diagnostics.warning[i], part))
+            return true;
+    return false;
+}
+
+static void expect_lengths(const size_t *lengths, size_t n)
+{
+    CU_ASSERT_EQUAL(script.calls, n);
+    for (size_t i = 0; i < n && i < script.calls; i++)
+        CU_ASSERT_EQUAL(script.lengths[i], lengths[i]);
+}
+
+static void stops_when_settled(void)
+{
+    static const size_t one[] = {8000};
+    struct world x;
+    start(&x);
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    expect_lengths(one, 1);
+    CU_ASSERT_TRUE(x.a.diagnostics.trusted);
+    CU_ASSERT_FALSE(x.a.diagnostics.imprecise || x.a.diagnostics.slice);
+    CU_ASSERT_EQUAL(x.a.diagnostics.draws, 8000);
+    CU_ASSERT_EQUAL(x.a.diagnostics.max_rhat, 1.001);
+    CU_ASSERT_EQUAL(x.a.diagnostics.warnings, 0);
+    CU_ASSERT_EQUAL(x.a.recommendation, RECOMMEND_STOP_SUCCESS);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.decision[0].condition[0].value, 0.760250, 0.02);
+    CU_ASSERT_STRING_EQUAL(x.a.diagnostics.second_name, "quadrature");
+    CU_ASSERT(x.a.diagnostics.second_difference < 0.02);
+    CU_ASSERT_EQUAL(x.a.level[0].gain.sd, 0);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.level[2].response.q975, 1 + 1.96, 0.1);
+    CU_ASSERT_EQUAL(analyst_draws(x.analyst).n, 8000);
+    release(&x);
+}
+
+static void waits_for_convergence(void)
+{
+    static const size_t two[] = {8000, 16000};
+    struct world x;
+    start(&x);
+    script.converges_at = 10000;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    expect_lengths(two, 2);
+    CU_ASSERT_FALSE(x.a.diagnostics.slice);
+    release(&x);
+}
+
+static void precision_not_reached(void)
+{
+    static const size_t three[] = {8000, 16000, 30000};
+    struct world x;
+    start(&x);
+    x.w.d.precision = 0.0001;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    expect_lengths(three, 3);
+    CU_ASSERT_TRUE(x.a.diagnostics.trusted && x.a.diagnostics.imprecise);
+    CU_ASSERT_TRUE(x.a.target[0].imprecise && x.a.decision[0].condition[0].imprecise);
+    CU_ASSERT_TRUE(warned(&x, "precision asked for, 0.0001, was not reached in 30000 draws"));
+    release(&x);
+}
+
+/* On which side of its threshold a measure lies does not matter for how long the run goes on. */
+static void closeness_lengthens_the_run(void)
+{
+    static const size_t three[] = {8000, 16000, 30000};
+    for (int above = 0; above < 2; above++) {
+        struct world x;
+        start(&x);
+        x.condition.threshold = 0.760250;
+        x.condition.above = above;
+        CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+        expect_lengths(three, 3);
+        CU_ASSERT_TRUE(x.a.decision[0].condition[0].close);
+        CU_ASSERT_FALSE(x.a.diagnostics.imprecise);
+        CU_ASSERT_TRUE(warned(&x, "within 3 Monte Carlo errors of its threshold 0.76025"));
+        release(&x);
+    }
+}
+
+static void doubt_leads_to_slices(void)
+{
+    static const size_t two[] = {8000, 8000};
+    struct world x;
+    start(&x);
+    script.doubtful = true;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    expect_lengths(two, 2);
+    CU_ASSERT_FALSE(script.by_slice[0]);
+    CU_ASSERT_TRUE(script.by_slice[1] && x.a.diagnostics.slice);
+    CU_ASSERT_EQUAL(x.a.diagnostics.kish, 0.9);
+    CU_ASSERT_TRUE(warned(&x, "slice sampling"));
+    release(&x);
+}
+
+static void missed_convergence_leads_to_slices(void)
+{
+    static const size_t four[] = {8000, 16000, 30000, 8000};
+    struct world x;
+    start(&x);
+    script.converges_at = 40000;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    expect_lengths(four, 4);
+    CU_ASSERT_TRUE(x.a.diagnostics.trusted && x.a.diagnostics.slice);
+    release(&x);
+}
+
+static void expect_distrust(const struct world *x)
+{
+    CU_ASSERT_FALSE(x->a.diagnostics.trusted);
+    CU_ASSERT_EQUAL(x->a.recommendation, RECOMMEND_UNDETERMINED);
+    for (size_t k = 0; k < LEVELS; k++)
+        CU_ASSERT_TRUE(isnan(x->a.level[k].next_share));
+}
+
+static void missed_again_is_distrusted(void)
+{
+    static const size_t six[] = {8000, 16000, 30000, 8000, 16000, 30000};
+    struct world x;
+    start(&x);
+    script.converges_at = script.slice_converges_at = 40000;
+    CU_ASSERT_EQUAL(run(&x), STATUS_DISTRUSTED);
+    expect_lengths(six, 6);
+    expect_distrust(&x);
+    CU_ASSERT_TRUE(warned(&x, "did not converge in 30000 draws"));
+    release(&x);
+}
+
+static void disagreement_is_tried_again_by_slices(void)
+{
+    static const size_t two[] = {8000, 8000};
+    struct world x;
+    start(&x);
+    script.shift = 0.3;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    expect_lengths(two, 2);
+    CU_ASSERT_TRUE(x.a.diagnostics.slice && x.a.diagnostics.trusted);
+    release(&x);
+}
+
+static void lasting_disagreement_is_distrusted(void)
+{
+    struct world x;
+    start(&x);
+    script.shift = script.slice_shift = 0.3;
+    CU_ASSERT_EQUAL(run(&x), STATUS_DISTRUSTED);
+    expect_distrust(&x);
+    CU_ASSERT_TRUE(warned(&x, "Two methods of computation do not agree"));
+    CU_ASSERT(x.a.diagnostics.second_difference > 0.05);
+    release(&x);
+}
+
+static void shares_before_and_after_the_start(void)
+{
+    struct world x;
+    start(&x);
+    x.w.ratio[1] = 2;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_EQUAL(x.a.level[1].next_share, 0.5);
+    release(&x);
+    start(&x);
+    x.w.d.allocation.control_share = 0.2;
+    x.r.adapted = true;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.level[0].next_share, 0.2, 1e-15);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.level[2].next_share, 0.8 * x.a.level[2].pr_target[0], 1e-12);
+    release(&x);
+    start(&x);
+    x.r.adapted = x.r.final = true;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_EQUAL(x.a.recommendation, RECOMMEND_COMPLETE);
+    CU_ASSERT_TRUE(isnan(x.a.level[2].next_share));
+    release(&x);
+}
+
+static void closing_levels(void)
+{
+    const bool closed[LEVELS] = {true, false, true}, all[LEVELS] = {false, true, true};
+    struct world x;
+    start(&x);
+    x.r.closed = closed; /* the control stays open whatever is asked */
+    x.r.adapted = true;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_TRUE(x.a.level[0].open && !x.a.level[2].open);
+    CU_ASSERT_EQUAL(x.a.level[2].pr_target[0], 0);
+    CU_ASSERT_EQUAL(x.a.level[2].pr_meets[0], 0);
+    CU_ASSERT_EQUAL(x.a.level[1].pr_target[0], 1);
+    CU_ASSERT_EQUAL(x.a.level[2].next_share, 0);
+    CU_ASSERT_EQUAL(x.a.target[0].selected, 1);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.level[2].response.mean, 1, 0.05);
+    release(&x);
+    start(&x);
+    x.r.closed = all;
+    CU_ASSERT_EQUAL(run(&x), STATUS_INPUT);
+    release(&x);
+}
+
+static void warnings_about_data(void)
+{
+    struct world x;
+    start(&x);
+    x.data.n[0] = x.data.n[2] = 0;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_TRUE(warned(&x, "No outcomes yet at A, C:"));
+    CU_ASSERT_TRUE(warned(&x, "Only B has outcomes"));
+    release(&x);
+    start(&x);
+    x.data.n[0] = x.data.n[1] = x.data.n[2] = 0;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_TRUE(warned(&x, "every figure comes from the priors alone"));
+    CU_ASSERT_FALSE(warned(&x, "No outcomes yet at"));
+    release(&x);
+}
+
+static void simulated_fits(void)
+{
+    struct world x;
+    start(&x);
+    x.r.live = false;
+    x.r.adapted = true;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_EQUAL(script.lengths[0], 1000);
+    CU_ASSERT_EQUAL(script.calls, 1);
+    CU_ASSERT_EQUAL(x.a.recommendation, RECOMMEND_STOP_SUCCESS);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.level[2].gain.mean, 1, 0.2);
+    CU_ASSERT_PTR_NULL(x.a.diagnostics.second_name);
+    CU_ASSERT(x.a.level[2].next_share > x.a.level[1].next_share);
+    release(&x);
+    start(&x);
+    script.distrusted = true;
+    x.r.live = false;
+    CU_ASSERT_EQUAL(run(&x), STATUS_DISTRUSTED);
+    expect_distrust(&x);
+    release(&x);
+}
+
+static void priors(void)
+{
+    struct world x;
+    struct err e = ERR_INIT;
+    start(&x);
+    CU_ASSERT_EQUAL(analyst_new(&x.analyst, &x.w.d, &e), STATUS_OK);
+    analysis_init(&x.a, &x.w.d);
+    CU_ASSERT_EQUAL(analysis_prior(&x.a, x.analyst, &x.w.d, &e), STATUS_OK);
+    CU_ASSERT_EQUAL(analyst_draws(x.analyst).n, 65536);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.level[2].pr_target[0], 0.760250, 0.01);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.level[2].pr_positive, 0.760250, 0.01);
+    CU_ASSERT_EQUAL(x.a.target[0].pr_none, 0);
+    release(&x);
+    err_release(&e);
+}
+
+static const struct unit_test tests[] = {
+    {"stops when everything is settled",           stops_when_settled                   },
+    {"waits for convergence",                      waits_for_convergence                },
+    {"precision not reached",                      precision_not_reached                },
+    {"closeness lengthens the run",                closeness_lengthens_the_run          },
+    {"doubt leads to slice sampling",              doubt_leads_to_slices                },
+    {"missed convergence leads to slice sampling", missed_convergence_leads_to_slices   },
+    {"missed again: distrusted",                   missed_again_is_distrusted           },
+    {"disagreement is tried again by slices",      disagreement_is_tried_again_by_slices},
+    {"lasting disagreement: distrusted",           lasting_disagreement_is_distrusted   },
+    {"shares before and after the start",          shares_before_and_after_the_start    },
+    {"closing levels",                             closing_levels                       },
+    {"warnings about data",                        warnings_about_data                  },
+    {"simulated fits",                             simulated_fits                       },
+    {"priors",                                     priors                               },
+    UNIT_END
+};
+
+int main(void)
+{
+    return unit_main("live_run", tests);
+}
