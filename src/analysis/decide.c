@@ -70,18 +70,3 @@ void decide(struct analysis *out, const struct judgement *j, const struct analys
     }
     out->recommendation = r->final ? last(out, d) : interim(out, d);
 }
-
-bool decide_each(const struct analysis *a, const struct design *d,
-                 bool (*each)(const struct condition *c, const struct condition_result *x,
-                              void *context),
-                 void *context)
-{
-    for (size_t i = 0; i < d->decisions; i++)
-        for (size_t c = 0; c < d->decision[i].when.count; c++)
-            if (!each(&d->decision[i].when.list[c], &a->decision[i].condition[c], context))
-                return false;
-    for (size_t c = 0; d->has_final && c < d->final_success.count; c++)
-        if (!each(&d->final_success.list[c], &a->final_success.condition[c], context))
-            return false;
-    return true;
-}

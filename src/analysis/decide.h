@@ -19,11 +19,4 @@ void decide(struct analysis *out, const struct judgement *j, const struct analys
 /* Whether a join of conditions holds. */
 bool decide_joined(const struct conditions *when, const struct condition_result *x);
 
-/* Calls `each` for every condition with its result, in order, those of `final` last; stops where it
- * returns false, and returns false then. */
-bool decide_each(const struct analysis *a, const struct design *d,
-                 bool (*each)(const struct condition *c, const struct condition_result *x,
-                              void *context),
-                 void *context);
-
 #endif
