@@ -3,6 +3,7 @@
 #include "analysis/decide.h"
 
 #include <math.h>
+#include <stdbool.h>
 
 #include "analysis/measures.h"
 
@@ -18,7 +19,7 @@ static void evaluate(const struct condition *c, const struct judgement *j,
     x->imprecise = x->mcse > j->d->precision;
 }
 
-bool decide_joined(const struct conditions *when, const struct condition_result *x)
+static bool holds(const struct conditions *when, const struct condition_result *x)
 {
     const bool any = when->join == JOIN_ANY;
     for (size_t i = 0; i < when->count; i++)
@@ -32,7 +33,7 @@ static void evaluate_all(const struct conditions *when, const struct judgement *
 {
     for (size_t i = 0; i < when->count; i++)
         evaluate(&when->list[i], j, &x->condition[i]);
-    x->met = decide_joined(when, x->condition);
+    x->met = holds(when, x->condition);
 }
 
 static bool is_in_force(const struct decision *d, const struct analysis_request *r)

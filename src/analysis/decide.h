@@ -8,15 +8,10 @@
 #ifndef TERRACE_DECIDE_H
 #define TERRACE_DECIDE_H
 
-#include <stdbool.h>
-
 #include "analysis/analysis.h"
 #include "analysis/judge.h"
 
 /* Fills out->decision, out->final_success and out->recommendation (as if trusted). */
 void decide(struct analysis *out, const struct judgement *j, const struct analysis_request *r);
-
-/* Whether a join of conditions holds. */
-bool decide_joined(const struct conditions *when, const struct condition_result *x);
 
 #endif
