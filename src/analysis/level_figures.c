@@ -102,6 +102,32 @@ void figures_full(struct analysis *out, const struct judgement *j)
         full_level(out, j, k);
 }
 
+/* Mean and sd in one pass over eight partial sums about the first value: fast, and the same on
+ * every machine. */
+static void quick_moments(const double *x, size_t n, double *mean, double *sd)
+{
+    enum { LANES = 8 };
+    double sum[LANES] = {0}, square[LANES] = {0}, total = 0, squares = 0;
+    const double pivot = x[0];
+    for (size_t i = 0; i + LANES <= n; i += LANES)
+        for (size_t l = 0; l < LANES; l++) {
+            const double u = x[i + l] - pivot;
+            sum[l] += u;
+            square[l] += u * u;
+        }
+    for (size_t l = 0; l < LANES; l++) {
+        total += sum[l];
+        squares += square[l];
+    }
+    for (size_t i = n - n % LANES; i < n; i++) {
+        total += x[i] - pivot;
+        squares += (x[i] - pivot) * (x[i] - pivot);
+    }
+    const double count = (double)n, variance = (squares - total * (total / count)) / (count - 1);
+    *mean = pivot + total / count;
+    *sd = variance > 0 ? sqrt(variance) : 0;
+}
+
 void figures_short(struct analysis *out, const struct judgement *j)
 {
     const struct design *d = j->d;
@@ -111,8 +137,7 @@ void figures_short(struct analysis *out, const struct judgement *j)
     for (size_t k = 0; k < d->levels; k++) {
         struct level_result *x = &out->level[k];
         x->response = x->gain = no_spread;
-        x->response.mean = diag_mean(judge_row(j, k, false), j->draws.n);
-        x->response.sd = diag_sd(judge_row(j, k, false), j->draws.n, x->response.mean);
+        quick_moments(judge_row(j, k, false), j->draws.n, &x->response.mean, &x->response.sd);
         x->pr_positive = NAN;
     }
     for (size_t k = 0; k < d->levels && gains; k++) {
