@@ -224,6 +224,26 @@ static void lasting_disagreement_is_distrusted(void)
     release(&x);
 }
 
+/* B and C are the target about equally often, but C meets it much more often. The second method
+ * finds C ahead, and still has to be asked about the level that the first one selected. */
+static void methods_are_compared_at_the_same_level(void)
+{
+    struct world x;
+    start(&x);
+    script.mean[2] = 1.32;
+    script.shift = 0.05;
+    x.w.d.targets = 0;
+    tiny_target(&x.w, &rule_minimum_effect, 0.36, OF_BEST);
+    x.condition.measure = &measure_pr_meets;
+    x.condition.target = 0;
+    x.condition.level = LEVEL_NONE;
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_TRUE(x.a.target[0].close);
+    CU_ASSERT_EQUAL(x.a.target[0].selected, 1);
+    CU_ASSERT_FALSE(x.a.diagnostics.slice);
+    release(&x);
+}
+
 static void shares_before_and_after_the_start(void)
 {
     struct world x;
@@ -325,20 +345,21 @@ static void priors(void)
 }
 
 static const struct unit_test tests[] = {
-    {"stops when everything is settled",           stops_when_settled                   },
-    {"waits for convergence",                      waits_for_convergence                },
-    {"precision not reached",                      precision_not_reached                },
-    {"closeness lengthens the run",                closeness_lengthens_the_run          },
-    {"doubt leads to slice sampling",              doubt_leads_to_slices                },
-    {"missed convergence leads to slice sampling", missed_convergence_leads_to_slices   },
-    {"missed again: distrusted",                   missed_again_is_distrusted           },
-    {"disagreement is tried again by slices",      disagreement_is_tried_again_by_slices},
-    {"lasting disagreement: distrusted",           lasting_disagreement_is_distrusted   },
-    {"shares before and after the start",          shares_before_and_after_the_start    },
-    {"closing levels",                             closing_levels                       },
-    {"warnings about data",                        warnings_about_data                  },
-    {"simulated fits",                             simulated_fits                       },
-    {"priors",                                     priors                               },
+    {"stops when everything is settled",           stops_when_settled                    },
+    {"waits for convergence",                      waits_for_convergence                 },
+    {"precision not reached",                      precision_not_reached                 },
+    {"closeness lengthens the run",                closeness_lengthens_the_run           },
+    {"doubt leads to slice sampling",              doubt_leads_to_slices                 },
+    {"missed convergence leads to slice sampling", missed_convergence_leads_to_slices    },
+    {"missed again: distrusted",                   missed_again_is_distrusted            },
+    {"disagreement is tried again by slices",      disagreement_is_tried_again_by_slices },
+    {"lasting disagreement: distrusted",           lasting_disagreement_is_distrusted    },
+    {"methods are compared at the same level",     methods_are_compared_at_the_same_level},
+    {"shares before and after the start",          shares_before_and_after_the_start     },
+    {"closing levels",                             closing_levels                        },
+    {"warnings about data",                        warnings_about_data                   },
+    {"simulated fits",                             simulated_fits                        },
+    {"priors",                                     priors                                },
     UNIT_END
 };
 

@@ -279,11 +279,29 @@ static void responses_of_the_selected_level(void)
     CU_ASSERT_EQUAL(value, counted(&x, (size_t)level, LEVEL_NONE, -0.25));
     release(&x);
     start(&x, 0);
+    x.w.d.higher_is_better = false;
     add_moments(&x);
     judge(&x);
     CU_ASSERT_DOUBLE_EQUAL(value_of(&c, &x, &level),
-                           exact_share(&x, x.exact[0], x.exact[1], (size_t)x.j->selected[0], 0.25),
+                           exact_share(&x, x.exact[0], x.exact[1], (size_t)x.j->selected[0], -0.25),
                            1e-12);
+    release(&x);
+}
+
+/* Without spread a probability is 0 or 1, and what equals the bar does not pass it. */
+static void no_spread_and_strictly_above(void)
+{
+    struct world x;
+    start(&x, 0);
+    add_moments(&x);
+    judge(&x);
+    struct condition c = condition_on(&measure_pr_gain, -1, 2);
+    c.gain = 0.5;
+    for (size_t i = 0; i < x.draws.stride * LEVELS; i++) {
+        x.exact[2][i] = i % 2 ? 0.5 : 0.75;
+        x.exact[3][i] = 0;
+    }
+    CU_ASSERT_EQUAL(value_of(&c, &x, NULL), 0.5);
     release(&x);
 }
 
@@ -452,6 +470,7 @@ static const struct unit_test tests[] = {
     {"pr_any_gain",                                          any_gain_is_counted                    },
     {"pr_any_gain over a rate, on the logit",                any_gain_over_a_rate_on_the_logit      },
     {"pr_response",                                          responses_of_the_selected_level        },
+    {"no spread, and strictly above",                        no_spread_and_strictly_above           },
     {"pr_level and pr_meets",                                levels_and_meeting                     },
     {"predictive_next, continuous",                          next_trial_continuous                  },
     {"predictive_next, binary",                              next_trial_binary                      },
