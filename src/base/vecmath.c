@@ -2,12 +2,8 @@
 /* vecmath.c: block functions over arrays, compiled once per instruction set. */
 #include "base/vecmath.h"
 
+#include "base/isa_name.h"
 #include "base/vecmath_lanes.h"
-
-#define PASTE2(a, b) a##_##b
-#define PASTE(a, b) PASTE2(a, b)
-#define NAME2(x) #x
-#define NAME(x) NAME2(x)
 
 /* A short tail goes through a padded copy, so that every element takes the same path. */
 #define BLOCK(function, lanes)                                    \
@@ -30,6 +26,6 @@ BLOCK(block_log1p_exp, v_log1p_exp)
 BLOCK(block_logistic, v_logistic)
 BLOCK(block_normal_cdf, v_normal_cdf)
 
-const struct vecmath PASTE(vecmath, ISA) = {
-    NAME(ISA), block_exp, block_log, block_log1p_exp, block_logistic, block_normal_cdf,
+const struct vecmath ISA_NAME(vecmath) = {
+    ISA_TEXT, block_exp, block_log, block_log1p_exp, block_logistic, block_normal_cdf,
 };

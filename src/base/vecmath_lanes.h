@@ -92,6 +92,16 @@ LANE_FN vd v_logistic(vd x)
     return v_pick(x < 0.0, small, 1.0 / (1.0 + e));
 }
 
+/* ln(1 + e^x), and 1 / (1 + e^-x) into *p, from one exponential */
+LANE_FN vd v_softplus(vd x, vd *p)
+{
+    const vd e = v_exp_core(v_max(-v_abs(x), v_set(-708.0)));
+    const vd u = 1.0 + e;
+    const vd inverse = 1.0 / u;
+    *p = v_pick(x < 0.0, e * inverse, inverse);
+    return v_max(x, v_set(0.0)) + (v_log_core(u) + (e - (u - 1.0)) * inverse);
+}
+
 LANE_FN vd v_normal_cdf(vd x)
 {
     static const double a[] = {3.52624965998911e-02, 0.700383064443688, 6.37396220353165,

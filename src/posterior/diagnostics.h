@@ -11,7 +11,7 @@
 
 #include <stddef.h>
 
-double diag_ess(const double *x, size_t n, size_t chains);      /* of the mean, no ranks; split chains */
+double diag_ess(const double *x, size_t n, size_t chains); /* of the mean, no ranks; split chains */
 double diag_ess_bulk(const double *x, size_t n, size_t chains); /* rank-normalised */
 double diag_ess_tail(const double *x, size_t n, size_t chains); /* min over 5% and 95% quantile */
 double diag_rhat(const double *x, size_t n, size_t chains);     /* max of bulk and folded, ranks */

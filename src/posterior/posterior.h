@@ -30,7 +30,8 @@ struct draws {
     const double *parameter; /* [parameter] in the order of the model's parameter list */
     /* Continuous endpoints only, else NULL: exact Gaussian moments given the draw's (phi, sd):
      * of theta_level, and of theta_level - theta_reference where the design's reference is a level
-     * (else NULL; rows of the reference itself are 0). Not turned: a lower-is-better response stays. */
+     * (else NULL; rows of the reference itself are 0). Not turned: a lower-is-better response
+     * stays. */
     const double *response_mean, *response_sd;
     const double *difference_mean, *difference_sd;
 };
@@ -66,8 +67,8 @@ void posterior_extend(struct posterior *p, size_t total);
 void posterior_use_slice(struct posterior *p);
 bool posterior_is_slice(const struct posterior *p);
 
-/* The simulated fit (methods, section 2): `draws` draws; doubtful ones get up to 7 more batches, then the
- * slice sampler; *doubtful and *distrusted tell. */
+/* The simulated fit (methods, section 2): `draws` draws; doubtful ones get up to 7 more batches,
+ * then the slice sampler; *doubtful and *distrusted tell. */
 void posterior_simulated(struct posterior *p, size_t draws, bool *doubtful, bool *distrusted);
 
 /* The draws so far: valid until the next call on p. */
@@ -87,7 +88,8 @@ void posterior_diagnose(const struct draws *d, int threads, struct convergence *
  * next call on p. *name is "quadrature" or "slice". Does not touch the first draws. */
 struct draws posterior_second(struct posterior *p, const char **name);
 
-/* `count` draws from the prior (parameters and level means), for `check`. *draws stay owned by p. */
+/* `count` draws from the prior (parameters and level means), for `check`. *draws stay owned by p.
+ */
 struct draws posterior_prior(struct posterior *p, size_t count, struct rng_key key);
 
 /* CURVE_BASIS only: theta on the link scale at level value x, for every draw of d: out[d->n].
