@@ -16,6 +16,15 @@ static void add_number(struct table *c, double x)
     table_cell(c, isnan(x) ? "–" : number_significant(s, x, 4));
 }
 
+/* At most four significant digits, no zeros at the end. */
+static void add_brief(struct text *out, double x)
+{
+    char s[NUMBER_CHARS];
+    double rounded = x;
+    number_parse(number_significant(s, x, 4), &rounded);
+    text_add(out, number_shortest(s, rounded));
+}
+
 static void add_fixed(struct table *c, double x, int decimals)
 {
     char s[NUMBER_CHARS];
@@ -118,7 +127,7 @@ static void target_table(struct text *out, const struct check_report *r, size_t 
     table_cell(c, "none");
     for (size_t i = from; i < to; i++) {
         add_fixed(c, r->prior->target[i].pr_none, PROBABILITY_DECIMALS);
-        table_cell(c, "");
+        table_cell(c, "–");
     }
     table_text(out, c);
     table_free(c);
@@ -190,11 +199,12 @@ static void add_truth(struct table *c, const struct design *d, const struct scen
         table_cell(c, "from the prior");
         return;
     }
-    char x[NUMBER_CHARS], g[NUMBER_CHARS];
-    text_add(table_open(c), number_significant(x, s->response[k], 4));
+    add_brief(table_open(c), s->response[k]);
     double gain = expected_gain(d, s->response, k);
     if (!isnan(gain)) {
-        text_addf(table_open(c), " (%s%s)", gain > 0 ? "+" : "", number_significant(g, gain, 3));
+        text_add(table_open(c), gain > 0 ? " (+" : " (");
+        add_brief(table_open(c), gain);
+        text_add(table_open(c), ")");
     }
     table_next(c);
 }

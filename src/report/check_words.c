@@ -13,6 +13,12 @@ void say_value(struct text *out, double x, const char *unit)
     }
 }
 
+void say_time(struct text *out, const struct design *d, double x)
+{
+    say_value(out, x, d->time_unit);
+    text_add(out, x < 1 || x > 1 ? "s" : "");
+}
+
 static void add_end(struct text *out, const char *word, double x)
 {
     if (isfinite(x)) {
@@ -54,7 +60,7 @@ void say_endpoint(struct text *out, const struct design *d)
     }
     if (d->observed_after > 0) {
         text_add(out, "; observed ");
-        say_value(out, d->observed_after, d->time_unit);
+        say_time(out, d, d->observed_after);
         text_add(out, " after enrolment");
     } else {
         text_add(out, "; observed at once");
@@ -128,7 +134,7 @@ void say_conditions(struct text *out, const struct design *d, const struct condi
             text_add(out, c->join == JOIN_ANY ? ", or " : ", and ");
         }
         c->list[i].measure->sentence(&c->list[i], d, out);
-        text_add(out, c->list[i].above ? " is above " : " is below ");
+        text_add(out, c->list[i].above ? " exceeds " : " falls below ");
         add_shortest_number(out, c->list[i].threshold);
     }
 }

@@ -7,13 +7,14 @@
 #include "base/text.h"
 #include "design/design.h"
 
-void say_value(struct text *out, double x, const char *unit); /* "20 mg" */
+void say_value(struct text *out, double x, const char *unit);      /* "20 mg" */
+void say_time(struct text *out, const struct design *d, double x); /* "2 weeks" */
 void say_prior(struct text *out, const struct prior *p);
 void say_endpoint(struct text *out, const struct design *d);
 void say_reference(struct text *out, const struct design *d);
 void say_curve(struct text *out, const struct design *d);
 void say_target(struct text *out, const struct design *d, const struct target *t);
-/* "the probability … is above 0.99 and …" */
+/* "the probability … exceeds 0.99, and …" */
 void say_conditions(struct text *out, const struct design *d, const struct conditions *c);
 void say_decision(struct text *out, const struct design *d, const struct decision *x);
 void say_final(struct text *out, const struct design *d);

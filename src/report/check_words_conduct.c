@@ -171,7 +171,7 @@ void say_analyses(struct text *out, const struct design *d)
     text_add(out, "; the last analysis is extra.");
     if (a->lag > 0) {
         text_add(out, " New shares and stops take effect ");
-        say_value(out, a->lag, d->time_unit);
+        say_time(out, d, a->lag);
         text_add(out, " after the data cut.");
     }
 }

@@ -10,7 +10,8 @@ words() {
     ended 0 && err_empty && [ "$(ls -A | grep -vcE '^(out|err|told)$')" = 0 ] || return 1
     local part
     for part in Question Levels Endpoint "Model and priors" "What the priors imply" Targets Allocation \
-        Analyses Decisions Scenarios Reminders "minimum" "Placebo" "lognormal\|normal" "expected at analysis"; do
+        Analyses Decisions Scenarios Reminders "normal, mean 0, sd 10" "meets MED" \
+        "exceeds 0.975" "2 weeks" "expected at analysis"; do
         grep -q -- "$part" out || { echo "no '$part'"; return 1; }
     done
 }
