@@ -1,0 +1,31 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* curves.h: the curves by name, and what several of them share. */
+#ifndef TERRACE_MODELS_CURVES_H
+#define TERRACE_MODELS_CURVES_H
+
+#include <stdbool.h>
+#include <stddef.h>
+
+#include "design/curve.h"
+
+extern const struct curve curve_linear, curve_log_linear, curve_quadratic, curve_emax,
+    curve_sigmoid_emax, curve_logistic, curve_ndlm, curve_independent;
+
+/* Ends a list of parameters. */
+#define PARAMETERS_END \
+    {                  \
+        .name = NULL   \
+    }
+
+double lowest_level(const struct curve_levels *levels);
+double largest_level(const struct curve_levels *levels);
+
+/* The fault of levels where a curve starts at 0 and saturates. */
+const char *saturating_level_fault(const struct curve_levels *levels);
+/* Default prior of its ED50: centred on the geometric middle of the positive levels. */
+struct prior saturating_ED50(const struct curve_levels *levels);
+
+/* One column that does not depend on shape numbers: row k is x[k] throughout. */
+void fill_row(size_t n, double value, double *row);
+
+#endif

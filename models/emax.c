@@ -1,0 +1,56 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* emax.c: the hyperbola that starts at level 0 and saturates. */
+#include "models/curves.h"
+
+enum { E0, EMAX, ED50 };
+
+static const struct parameter parameters[] = {
+    {.name = "E0",
+     .role = ROLE_LINEAR,
+     .coordinate = COORDINATE_SELF,
+     .help = "mean (binary: logit) at level 0"                                                    },
+    {              .name = "Emax",
+     .role = ROLE_LINEAR,
+     .coordinate = COORDINATE_SELF,
+     .help = "largest change from E0, reached at infinite level; negative where the curve falls"},
+    { .name = "ED50",
+     .role = ROLE_SHAPE,
+     .coordinate = COORDINATE_LOG,
+     .positive = true,
+     .help = "level of half the largest change"},
+    PARAMETERS_END
+};
+
+static struct prior default_prior(size_t i, const struct default_scales *s, bool *scaled)
+{
+    *scaled = i != ED50;
+    if (i == ED50)
+        return saturating_ED50(s->levels);
+    return prior_normal(i == E0 ? s->C : 0, s->A);
+}
+
+static void basis(const struct curve_levels *levels, size_t n,
+                  const double *const shape[SHAPES_MAX], const double *const log_shape[SHAPES_MAX],
+                  double *x)
+{
+    (void)log_shape;
+    for (size_t k = 0; k < levels->count; k++) {
+        const double d = levels->value[k];
+        double *row = x + k * n;
+
+        for (size_t i = 0; i < n; i++)
+            row[i] = d / (shape[0][i] + d);
+    }
+}
+
+const struct curve curve_emax = {
+    .key = "emax",
+    .formula = "E0 + Emax * d / (ED50 + d)",
+    .kind = CURVE_BASIS,
+    .parameters = parameters,
+    .monotone = true,
+    .levels_wanted = 2,
+    .level_fault = saturating_level_fault,
+    .default_prior = default_prior,
+    .basis = basis,
+};
