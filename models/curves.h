@@ -11,7 +11,19 @@
 extern const struct curve curve_linear, curve_log_linear, curve_quadratic, curve_emax,
     curve_sigmoid_emax, curve_logistic, curve_ndlm, curve_independent;
 
-/* Ends a list of parameters. */
+/* Rows of a list of parameters. ORDER: 0, or 2 for a parameter that only order 2 has. */
+#define COEFFICIENT_OF(ORDER, NAME, HELP)                                                 \
+    {                                                                                     \
+        .name = NAME, .role = ROLE_LINEAR, .coordinate = COORDINATE_SELF, .order = ORDER, \
+        .help = HELP                                                                      \
+    }
+#define COEFFICIENT(NAME, HELP) COEFFICIENT_OF(0, NAME, HELP)
+#define SHAPE(NAME, VARIANCE, COORDINATE, POSITIVE, HELP)                                 \
+    {                                                                                     \
+        .name = NAME, .variance = VARIANCE, .role = ROLE_SHAPE, .coordinate = COORDINATE, \
+        .positive = POSITIVE, .help = HELP                                                \
+    }
+#define POSITIVE_SHAPE(NAME, HELP) SHAPE(NAME, NULL, COORDINATE_LOG, true, HELP)
 #define PARAMETERS_END \
     {                  \
         .name = NULL   \

@@ -3,11 +3,8 @@
 #include "models/curves.h"
 
 static const struct parameter parameters[] = {
-    {.name = "theta",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "mean (binary: logit) of each level"},
-    PARAMETERS_END
+    COEFFICIENT("theta", "mean (binary: logit) of each level"),
+    PARAMETERS_END,
 };
 
 static struct prior default_prior(size_t i, const struct default_scales *s, bool *scaled)

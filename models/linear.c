@@ -5,15 +5,10 @@
 enum { E0, SLOPE };
 
 static const struct parameter parameters[] = {
-    {.name = "E0",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "mean (binary: logit) where the curve starts: its value without the effect"          },
-    {.name = "slope",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "change per unit of the level (log_linear: of its logarithm; ndlm order 2: per step)"},
-    PARAMETERS_END
+    COEFFICIENT("E0", "mean (binary: logit) at level 0; of curve logistic: far below ED50"),
+    COEFFICIENT("slope", "change per unit of the level (log_linear: of its logarithm; ndlm of "
+                         "order 2: the first step)"),
+    PARAMETERS_END,
 };
 
 static struct prior default_prior(size_t i, const struct default_scales *s, bool *scaled)

@@ -6,15 +6,9 @@
 enum { E0, SLOPE };
 
 static const struct parameter parameters[] = {
-    {.name = "E0",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "mean (binary: logit) where level + shift is 1"},
-    {.name = "slope",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "change per unit of ln(level + shift)"         },
-    PARAMETERS_END
+    COEFFICIENT("E0", "mean (binary: logit) where level + shift is 1"),
+    COEFFICIENT("slope", "change per unit of ln(level + shift)"),
+    PARAMETERS_END,
 };
 
 static const char *level_fault(const struct curve_levels *levels)

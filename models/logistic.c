@@ -6,24 +6,13 @@
 enum { E0, EMAX, ED50, SPREAD };
 
 static const struct parameter parameters[] = {
-    {.name = "E0",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "mean (binary: logit) far below ED50"},
-    {.name = "Emax",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "change from far below ED50 to far above it"},
-    {.name = "ED50",
-     .role = ROLE_SHAPE,
-     .coordinate = COORDINATE_SELF,
-     .help = "level of half the change; may be negative"},
-    {.name = "spread",
-     .role = ROLE_SHAPE,
-     .coordinate = COORDINATE_LOG,
-     .positive = true,
-     .help = "levels over which the rise is spread: from 27% to 73% of it within one to each side"},
-    PARAMETERS_END};
+    COEFFICIENT("E0", "mean (binary: logit) far below ED50"),
+    COEFFICIENT("Emax", "change from E0 to far above ED50; negative where the curve falls"),
+    SHAPE("ED50", NULL, COORDINATE_SELF, false, "level of half of that change; may be negative"),
+    POSITIVE_SHAPE("spread", "width of the rise: one spread to each side of ED50 it is at 27% "
+                             "and 73%"),
+    PARAMETERS_END,
+};
 
 static struct prior default_prior(size_t i, const struct default_scales *s, bool *scaled)
 {

@@ -5,23 +5,12 @@
 enum { THETA, SLOPE, DRIFT_SD };
 
 static const struct parameter parameters[] = {
-    {.name = "theta",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help =
-         "level mean (binary: logit): of the first level of a walk, or of each independent one"},
-    { .name = "slope",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .order = 2,
-     .help = "first step of a walk of order 2"},
-    {                               .name = "drift_sd",
-     .variance = "drift_variance",
-     .role = ROLE_SHAPE,
-     .coordinate = COORDINATE_SELF,
-     .positive = true,
-     .help = "standard deviation of a step of the walk (order 2: of a change of step)"},
-    PARAMETERS_END
+    COEFFICIENT("theta", "level mean (binary: logit): of the first level of a walk, or of each "
+                         "independent one"),
+    COEFFICIENT_OF(2, "slope", "first step of a walk of order 2"),
+    SHAPE("drift_sd", "drift_variance", COORDINATE_SELF, true,
+          "standard deviation of a step of the walk (order 2: of a change of step)"),
+    PARAMETERS_END,
 };
 
 static struct prior default_prior(size_t i, const struct default_scales *s, bool *scaled)

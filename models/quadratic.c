@@ -5,19 +5,10 @@
 enum { E0, B1, B2 };
 
 static const struct parameter parameters[] = {
-    {.name = "E0",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "mean (binary: logit) at level 0"                      },
-    {.name = "b1",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "coefficient of u, the level as a share of the largest"},
-    {.name = "b2",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "coefficient of u squared"                             },
-    PARAMETERS_END
+    COEFFICIENT("E0", "mean (binary: logit) at level 0"),
+    COEFFICIENT("b1", "coefficient of u, the level as a share of the largest"),
+    COEFFICIENT("b2", "coefficient of u squared"),
+    PARAMETERS_END,
 };
 
 static const char *level_fault(const struct curve_levels *levels)

@@ -6,25 +6,11 @@
 enum { E0, EMAX, ED50, H };
 
 static const struct parameter parameters[] = {
-    {.name = "E0",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "mean (binary: logit) at level 0"                                                    },
-    {              .name = "Emax",
-     .role = ROLE_LINEAR,
-     .coordinate = COORDINATE_SELF,
-     .help = "largest change from E0, reached at infinite level; negative where the curve falls"},
-    { .name = "ED50",
-     .role = ROLE_SHAPE,
-     .coordinate = COORDINATE_LOG,
-     .positive = true,
-     .help = "level of half the largest change"},
-    {                                                     .name = "h",
-     .role = ROLE_SHAPE,
-     .coordinate = COORDINATE_LOG,
-     .positive = true,
-     .help = "steepness; at 1 the curve is emax"},
-    PARAMETERS_END
+    COEFFICIENT("E0", "mean (binary: logit) at level 0"),
+    COEFFICIENT("Emax", "change from E0 to far above ED50; negative where the curve falls"),
+    POSITIVE_SHAPE("ED50", "level of half of that change"),
+    POSITIVE_SHAPE("h", "steepness; at 1 the curve is emax"),
+    PARAMETERS_END,
 };
 
 static struct prior default_prior(size_t i, const struct default_scales *s, bool *scaled)
