@@ -6,7 +6,8 @@
 
 #include "base/base.h"
 #include "base/vecmath.h"
-#include "design/design.h"
+
+enum { PLACES = 3 }; /* lowest, this one, largest */
 
 const struct curve *curve_find(const char *key)
 {
@@ -41,22 +42,27 @@ static void split_values(const struct curve *c, const double *value, double beta
     }
 }
 
+/* Levels are taken one at a time, between the ends on which a curve may lean. */
 void curve_mean(const struct curve *c, const struct curve_levels *levels, const double *value,
                 double *theta)
 {
     double beta[COLUMNS_MAX] = {0}, shape[SHAPES_MAX] = {0}, log_shape[SHAPES_MAX] = {0};
-    double x[(COLUMNS_MAX - 1) * LEVELS_MAX];
     const double *const shapes[SHAPES_MAX] = {&shape[0], &shape[1]};
     const double *const log_shapes[SHAPES_MAX] = {&log_shape[0], &log_shape[1]};
     const size_t columns = curve_columns(c);
+    double place[PLACES], x[(COLUMNS_MAX - 1) * PLACES];
+    const struct curve_levels places = {.count = PLACES, .value = place, .shift = levels->shift};
 
-    if (c->kind != CURVE_BASIS || levels->count > LEVELS_MAX)
-        BUG("means are asked of a curve without a formula, or at too many levels");
+    if (c->kind != CURVE_BASIS)
+        BUG("means are asked of a curve without a formula");
     split_values(c, value, beta, shape, log_shape);
-    c->basis(levels, 1, shapes, log_shapes, x);
+    place[0] = levels->value[0];
+    place[2] = levels->value[levels->count - 1];
     for (size_t k = 0; k < levels->count; k++) {
+        place[1] = levels->value[k];
+        c->basis(&places, 1, shapes, log_shapes, x);
         theta[k] = beta[0];
         for (size_t j = 1; j < columns; j++)
-            theta[k] += beta[j] * x[(j - 1) * levels->count + k];
+            theta[k] += beta[j] * x[(j - 1) * PLACES + 1];
     }
 }
