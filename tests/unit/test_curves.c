@@ -316,6 +316,15 @@ static void levels_that_suit(void)
         }
 }
 
+static void zero_alone_suits_no_saturating_curve(void)
+{
+    const struct curve_levels at = levels_of(itch, 1);
+
+    CU_ASSERT_PTR_NOT_NULL(curve_find("emax")->level_fault(&at));
+    CU_ASSERT_PTR_NOT_NULL(curve_find("sigmoid_emax")->level_fault(&at));
+    CU_ASSERT_PTR_NOT_NULL(curve_find("quadratic")->level_fault(&at));
+}
+
 static void shift_decides_for_log_linear(void)
 {
     static const double value[] = {-3, 5};
@@ -329,15 +338,16 @@ static void shift_decides_for_log_linear(void)
 }
 
 static const struct unit_test tests[] = {
-    {"the list",                         the_list                    },
-    {"parameters of the interface",      parameters_of_the_interface },
-    {"means follow the formula",         means_follow_the_formula    },
-    {"means at negative levels",         means_at_negative_levels    },
-    {"the basis follows the formula",    basis_follows_the_formula   },
-    {"blocks of points do not show",     blocks_do_not_show          },
-    {"extremes stay in bounds",          extremes_stay_in_bounds     },
-    {"levels that suit",                 levels_that_suit            },
-    {"the shift decides for log_linear", shift_decides_for_log_linear},
+    {"the list",                          the_list                            },
+    {"parameters of the interface",       parameters_of_the_interface         },
+    {"means follow the formula",          means_follow_the_formula            },
+    {"means at negative levels",          means_at_negative_levels            },
+    {"the basis follows the formula",     basis_follows_the_formula           },
+    {"blocks of points do not show",      blocks_do_not_show                  },
+    {"extremes stay in bounds",           extremes_stay_in_bounds             },
+    {"levels that suit",                  levels_that_suit                    },
+    {"0 alone suits no saturating curve", zero_alone_suits_no_saturating_curve},
+    {"the shift decides for log_linear",  shift_decides_for_log_linear        },
     UNIT_END,
 };
 
