@@ -38,6 +38,17 @@ double vm_pow(double x, double y)
     return vm_exp(y * vm_log(x));
 }
 
+void vm_sin_cos_turns(double turns, double *sine, double *cosine)
+{
+    const double quarters = 4.0 * turns;
+    const int whole = (int)(quarters + 0.5);
+    vd s, c;
+    v_sin_cos_quarter(v_set(quarters - whole), &s, &c);
+    const double a = s[0], b = c[0];
+    *sine = whole % 4 == 0 ? a : whole % 4 == 1 ? b : whole % 4 == 2 ? -a : -b;
+    *cosine = whole % 4 == 0 ? b : whole % 4 == 1 ? -a : whole % 4 == 2 ? -b : a;
+}
+
 /* coefficients highest power first */
 static double polynomial(const double *c, size_t n, double x)
 {

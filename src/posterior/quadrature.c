@@ -1,0 +1,302 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* quadrature.c: scan, zoom, weigh all cells of a product grid, and draw from them. */
+#include "posterior/quadrature.h"
+
+#include <math.h>
+#include <string.h>
+
+#include "base/mem.h"
+#include "base/vecmath.h"
+
+/* Axes at most; log units below the maximum that belong to the box; passes of the zoom; reach of
+ * the standard normals of a binary endpoint. */
+enum { AXES_MAX = 3, PASSES = 8 };
+#define KEEP 18.0
+#define NORMAL_REACH 9.0
+
+/* cells an axis, by number of axes: while zooming, and at last */
+static const size_t scan_cells[AXES_MAX + 1] = {1, 64, 40, 24};
+static const size_t final_cells[AXES_MAX + 1] = {1, 8192, 448, 80};
+
+struct axis {
+    double low, high, floor, ceiling;
+};
+
+struct grid {
+    const struct problem *p;
+    size_t axes, cells; /* cells an axis */
+    struct axis axis[AXES_MAX];
+    struct points pt;
+    double *normal, *theta, *response, *beta, *y, *w, *extra, *value;
+    struct rng_lanes rng;
+};
+
+static size_t axis_count(const struct problem *p)
+{
+    return p->dims + (p->sd_free ? 1 : 0) + (p->binary ? problem_normal_rows(p) : 0);
+}
+
+bool quadrature_reaches(const struct problem *p)
+{
+    return axis_count(p) <= AXES_MAX;
+}
+
+static double *block(size_t rows)
+{
+    return mem_aligned((rows ? rows : 1) * BLOCK, sizeof(double));
+}
+
+static void grid_init(struct grid *g, const struct problem *p, const struct proposal *q)
+{
+    *g = (struct grid){.p = p, .axes = axis_count(p)};
+    points_init(&g->pt, p, BLOCK);
+    g->normal = block(problem_normal_rows(p));
+    double **const per_level[] = {&g->theta, &g->response, &g->y, &g->w};
+    for (size_t i = 0; i < sizeof per_level / sizeof *per_level; i++)
+        *per_level[i] = block(p->levels);
+    g->beta = block(COLUMNS_MAX);
+    g->extra = block(1);
+    g->value = block(1);
+    g->pt.y = g->y;
+    g->pt.w = g->w;
+    for (size_t k = 0; p->binary && k < p->levels; k++)
+        for (size_t i = 0; i < BLOCK; i++) {
+            g->y[k * BLOCK + i] = q->pseudo_y[q->best * p->levels + k];
+            g->w[k * BLOCK + i] = q->pseudo_w[q->best * p->levels + k];
+        }
+}
+
+static void grid_release(struct grid *g)
+{
+    points_release(&g->pt);
+    double *const all[] = {g->normal, g->theta, g->response, g->beta,
+                           g->y,      g->w,     g->extra,    g->value};
+    for (size_t i = 0; i < sizeof all / sizeof *all; i++)
+        mem_free(all[i]);
+}
+
+static void grid_axes(struct grid *g, const struct coordinate_range *r)
+{
+    const struct problem *p = g->p;
+    size_t a = 0;
+    for (size_t d = 0; d < p->dims; d++) {
+        const double room = r->high[d] - r->low[d];
+        g->axis[a++] = (struct axis){r->low[d], r->high[d], p->reflect[d] ? 0.0 : r->low[d] - room,
+                                     r->high[d] + room};
+    }
+    if (p->sd_free) {
+        const double room = r->v_high - r->v_low;
+        g->axis[a++] = (struct axis){r->v_low, r->v_high, r->v_low - room, r->v_high + room};
+    }
+    while (a < g->axes)
+        g->axis[a++] = (struct axis){-NORMAL_REACH, NORMAL_REACH, -NORMAL_REACH, NORMAL_REACH};
+}
+
+/* where axis a's coordinates of the block stand */
+static double *axis_values(struct grid *g, size_t a)
+{
+    const struct problem *p = g->p;
+    if (a < p->dims)
+        return g->pt.coord[a];
+    if (p->sd_free)
+        return g->pt.v;
+    return g->normal + (a - p->dims) * BLOCK;
+}
+
+static double cell_width(const struct grid *g, size_t a)
+{
+    return (g->axis[a].high - g->axis[a].low) / (double)g->cells;
+}
+
+static size_t cell_total(const struct grid *g)
+{
+    size_t total = 1;
+    for (size_t a = 0; a < g->axes; a++)
+        total *= g->cells;
+    return total;
+}
+
+/* cell -> its index on axis a (the last axis runs fastest) */
+static size_t cell_index(const struct grid *g, size_t cell, size_t a)
+{
+    for (size_t b = g->axes - 1; b > a; b--)
+        cell /= g->cells;
+    return cell % g->cells;
+}
+
+static void evaluate(struct grid *g)
+{
+    const struct problem *p = g->p;
+    density_at(p, &g->pt);
+    for (size_t i = 0; i < BLOCK; i++)
+        g->value[i] = g->pt.log_prior[i] + g->pt.log_m[i];
+    if (p->binary) {
+        const struct observations o = {NULL, g->y, g->w};
+        p->marginal->draw(p, BLOCK, g->pt.x, g->pt.factor, g->normal, g->theta, g->beta);
+        p->marginal->binomial(p, BLOCK, g->theta, &o, g->extra, g->response);
+        for (size_t i = 0; i < BLOCK; i++)
+            g->value[i] += g->extra[i];
+        for (size_t r = 0; r < problem_normal_rows(p); r++)
+            for (size_t i = 0; i < BLOCK; i++)
+                g->value[i] -= 0.5 * g->normal[r * BLOCK + i] * g->normal[r * BLOCK + i];
+    }
+    for (size_t i = 0; i < BLOCK; i++)
+        if (!(g->value[i] < INFINITY))
+            g->value[i] = -INFINITY;
+}
+
+/* log weights of all cells at their middles */
+static void weigh_cells(struct grid *g, double *weight)
+{
+    const size_t total = cell_total(g);
+    for (size_t first = 0; first < total; first += BLOCK) {
+        for (size_t i = 0; i < BLOCK; i++) {
+            const size_t cell = first + i < total ? first + i : total - 1;
+            for (size_t a = 0; a < g->axes; a++)
+                axis_values(g, a)[i] =
+                    g->axis[a].low + cell_width(g, a) * ((double)cell_index(g, cell, a) + 0.5);
+        }
+        evaluate(g);
+        const size_t count = total - first < BLOCK ? total - first : BLOCK;
+        memcpy(weight + first, g->value, count * sizeof *weight);
+    }
+}
+
+static double top_of(const double *x, size_t n)
+{
+    double top = -INFINITY;
+    for (size_t i = 0; i < n; i++)
+        top = x[i] > top ? x[i] : top;
+    return top;
+}
+
+/* New ends of one axis around the cells that hold mass; widened where an edge does. */
+static bool zoom_axis(struct grid *g, const double *weight, double top, size_t a)
+{
+    size_t first = g->cells - 1, last = 0;
+    const size_t total = cell_total(g);
+    for (size_t cell = 0; cell < total; cell++) {
+        if (weight[cell] < top - KEEP)
+            continue;
+        const size_t index = cell_index(g, cell, a);
+        first = index < first ? index : first;
+        last = index > last ? index : last;
+    }
+    struct axis *x = &g->axis[a];
+    const double h = cell_width(g, a), width = x->high - x->low;
+    double low = x->low + h * ((double)first - (first == 0 ? 2.0 : 1.0));
+    double high = x->low + h * ((double)last + (last == g->cells - 1 ? 3.0 : 2.0));
+    low = low < x->floor ? x->floor : low;
+    high = high > x->ceiling ? x->ceiling : high;
+    const bool changed = high - low < 0.8 * width || low < x->low || high > x->high;
+    x->low = low;
+    x->high = high;
+    return changed;
+}
+
+static void fit_box(struct grid *g, double *weight)
+{
+    g->cells = scan_cells[g->axes];
+    for (int pass = 0; pass < PASSES; pass++) {
+        bool changed = false;
+        weigh_cells(g, weight);
+        const double top = top_of(weight, cell_total(g));
+        for (size_t a = 0; a < g->axes; a++)
+            changed = zoom_axis(g, weight, top, a) || changed;
+        if (!changed)
+            break;
+    }
+}
+
+/* log weights -> running sums, last = 1; false when no cell holds any mass */
+static bool accumulate(const struct problem *p, double *weight, size_t total)
+{
+    const double top = top_of(weight, total);
+    if (!(top > -INFINITY))
+        return false;
+    for (size_t i = 0; i < total; i++)
+        weight[i] -= top;
+    p->math->exp(total, weight, weight);
+    double sum = 0.0;
+    for (size_t i = 0; i < total; i++)
+        weight[i] = sum += weight[i];
+    for (size_t i = 0; i < total; i++)
+        weight[i] /= sum;
+    weight[total - 1] = 1.0;
+    return true;
+}
+
+static void write_block(struct grid *g, const struct draw_rows *out, size_t at)
+{
+    const struct problem *p = g->p;
+    density_at(p, &g->pt);
+    if (!p->binary) {
+        p->kernel->normals(&g->rng, (problem_normal_rows(p)) * BLOCK, g->normal);
+        if (out->response_mean)
+            p->marginal->moments(p, BLOCK, g->pt.x, g->pt.factor, out->stride,
+                                 out->response_mean + at, out->response_sd + at,
+                                 out->difference_mean ? out->difference_mean + at : NULL,
+                                 out->difference_sd ? out->difference_sd + at : NULL);
+    }
+    p->marginal->draw(p, BLOCK, g->pt.x, g->pt.factor, g->normal, g->theta, g->beta);
+    for (size_t k = 0; k < p->levels; k++) {
+        double *link = out->link + k * out->stride + at;
+        memcpy(link, g->theta + k * BLOCK, BLOCK * sizeof *link);
+        if (p->binary)
+            p->math->logistic(BLOCK, link, out->response + k * out->stride + at);
+    }
+    sampler_parameters(p, BLOCK, g->pt.shape[0], g->pt.shape[1], g->pt.sd, g->beta, g->theta, out,
+                       at);
+}
+
+/* Systematic draws: the j-th stands at (j + u) / count of the running sums. */
+static void draw_cells(struct grid *g, const double *sums, size_t count,
+                       const struct draw_rows *out)
+{
+    double move[BLOCK], u[RNG_LANES];
+    g->p->kernel->uniforms(&g->rng, RNG_LANES, u);
+    size_t cell = 0, chosen[BLOCK];
+    for (size_t at = 0; at < count; at += BLOCK) {
+        for (size_t i = 0; i < BLOCK; i++) {
+            const double place = ((double)(at + i) + u[0]) / (double)count;
+            while (sums[cell] <= place)
+                cell++;
+            chosen[i] = cell;
+        }
+        for (size_t a = 0; a < g->axes; a++) {
+            g->p->kernel->uniforms(&g->rng, BLOCK, move);
+            for (size_t i = 0; i < BLOCK; i++)
+                axis_values(g, a)[i] =
+                    g->axis[a].low +
+                    cell_width(g, a) * ((double)cell_index(g, chosen[i], a) + move[i]);
+        }
+        write_block(g, out, at);
+    }
+}
+
+void quadrature_run(const struct problem *p, const struct proposal *q,
+                    const struct coordinate_range *r, const struct rng_key *key, size_t count,
+                    const struct draw_rows *out)
+{
+    struct grid g;
+    grid_init(&g, p, q);
+    grid_axes(&g, r);
+    rng_lanes_init(&g.rng, key);
+    size_t most = final_cells[g.axes], scan = scan_cells[g.axes], total = 1, scans = 1;
+    for (size_t a = 0; a < g.axes; a++) {
+        total *= most;
+        scans *= scan;
+    }
+    double *weight = mem_new(total > scans ? total : scans, sizeof *weight);
+    if (g.axes > 0)
+        fit_box(&g, weight);
+    g.cells = most;
+    weigh_cells(&g, weight);
+    if (!accumulate(p, weight,
+                    total)) /* nothing found: a draw everywhere, which no check accepts */
+        for (size_t i = 0; i < total; i++)
+            weight[i] = (double)(i + 1) / (double)total;
+    draw_cells(&g, weight, count, out);
+    mem_free(weight);
+    grid_release(&g);
+}
