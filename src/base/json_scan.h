@@ -5,7 +5,7 @@
 
 #include <stddef.h>
 
-#include "status.h"
+#include "base/status.h"
 
 enum { JSON_DEPTH = 64, JSON_NUMBER_CHARS = 63 /* more are cut off by cJSON */ };
 
