@@ -38,8 +38,8 @@ void points_init(struct points *pt, const struct problem *p, size_t capacity)
         pt->shape[j] = mem_aligned(capacity, sizeof(double));
         pt->log_shape[j] = mem_aligned(capacity, sizeof(double));
     }
-    double **const rows[] = {&pt->v,         &pt->sd,    &pt->precision,
-                             &pt->log_prior, &pt->log_m, &pt->scratch};
+    double **const rows[] = {&pt->log_prior_shape, &pt->v,     &pt->sd,     &pt->precision,
+                             &pt->log_prior,       &pt->log_m, &pt->scratch};
     for (size_t r = 0; r < sizeof rows / sizeof *rows; r++)
         *rows[r] = mem_aligned(capacity, sizeof(double));
     pt->x = mem_aligned(capacity * (problem_basis_rows(p) + 1), sizeof(double));
