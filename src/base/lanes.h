@@ -82,6 +82,16 @@ LANE_FN vd v_abs(vd x)
     return (vd)((vu)x & v_set_bits(0x7fffffffffffffffULL));
 }
 
+/* whether every lane of a comparison holds */
+LANE_FN int v_all(vi where)
+{
+#if defined(__AVX2__)
+    return _mm256_movemask_pd((__m256d)where) == 15;
+#else
+    return _mm_movemask_pd((__m128d)where) == 3;
+#endif
+}
+
 LANE_FN vd v_sqrt(vd x)
 {
 #if defined(__AVX2__)

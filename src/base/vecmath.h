@@ -24,7 +24,7 @@ double vm_logistic(double x);  /* 1 / (1 + e^-x) */
 double vm_logit(double p);     /* ln(p / (1 - p)) */
 double vm_normal_cdf(double x);
 double vm_normal_quantile(double p);
-/* sine and cosine of `turns` full turns, 0 <= turns <= 1; within 4e-16 */
+/* sine and cosine of `turns` full turns, 0 <= turns <= 1; within 3e-14 */
 void vm_sin_cos_turns(double turns, double *sine, double *cosine);
 double vm_pow(double x, double y); /* exp(y log x), x > 0 */
 

@@ -141,26 +141,65 @@ static void interpolate(const struct proposal *q, size_t n, double *const coord[
     }
 }
 
-/* log u < difference of log weights: the proposal is taken */
+/* v by the logistic quantile around its mode */
+static void propose_v(size_t n, const double *u, const double *mode, const double *scale, double *v)
+{
+    for (size_t i = 0; i < n; i += VL) {
+        const vd p = v_load(u + i);
+        v_store(v + i, v_load(mode + i) + v_load(scale + i) * v_log_core(p / (1.0 - p)));
+    }
+}
+
+/* density[i] *= the logistic density of v */
+static void logistic_density(size_t n, const double *v, const double *mode, const double *scale,
+                             double *density)
+{
+    for (size_t i = 0; i < n; i += VL) {
+        const vd s = v_load(scale + i);
+        const vd t = v_abs((v_load(v + i) - v_load(mode + i)) / s);
+        const vd e = v_exp_core(v_max(-t, v_set(-708.0)));
+        v_store(density + i, v_load(density + i) * e / (s * ((1.0 + e) * (1.0 + e))));
+    }
+}
+
+/* log of the mixture of the grid's density and the prior's */
+static void log_mixture(size_t n, const double *density, const double *log_prior, double *out)
+{
+    for (size_t i = 0; i < n; i += VL) {
+        const vd prior =
+            v_exp_core(v_min(v_max(v_load(log_prior + i), v_set(-708.0)), v_set(708.0)));
+        const vd q = v_load(density + i) * (1.0 - 1.0 / PRIOR_EVERY) + prior * (1.0 / PRIOR_EVERY);
+        v_store(out + i, v_log_core(v_max(q, v_set(1e-300))));
+    }
+}
+
+/* log u < difference of log weights: the proposal is taken. First which, then every row in turn, so
+ * that a row's state stays in a register. */
 static void accept(struct sampler *s)
 {
     for (size_t lane = 0; lane < RNG_LANES; lane += VL) {
         vd weight = v_load(s->state_weight + lane);
+        vi taken[BLOCK_STEPS];
         for (size_t step = 0; step < BLOCK_STEPS; step++) {
             const size_t at = step * RNG_LANES + lane;
             const vd proposed = v_load(s->log_weight + at);
-            const vi taken = (vi)(v_log_core(v_load(s->uniform_accept + at)) < proposed - weight);
-            weight = v_pick(taken, proposed, weight);
-            for (size_t r = 0; r < s->rows; r++) {
-                double *now = s->state + r * RNG_LANES + lane;
-                const vd value = v_pick(taken, v_load(s->row[r] + at), v_load(now));
-                v_store(now, value);
-                v_store(s->accepted + r * BLOCK + at, value);
-            }
-            v_store(s->scratch + at, v_pick(taken, v_set(1), v_set(0)));
+            taken[step] = (vi)(v_log_core(v_load(s->uniform_accept + at)) < proposed - weight);
+            weight = v_pick(taken[step], proposed, weight);
+            v_store(s->scratch + at, v_pick(taken[step], v_set(1), v_set(0)));
         }
         v_store(s->state_weight + lane, weight);
+        for (size_t r = 0; r < s->rows; r++) {
+            const double *from = s->row[r] + lane;
+            double *to = s->accepted + r * BLOCK + lane;
+            vd now = v_load(s->state + r * RNG_LANES + lane);
+            for (size_t step = 0; step < BLOCK_STEPS; step++) {
+                now = v_pick(taken[step], v_load(from + step * RNG_LANES), now);
+                v_store(to + step * RNG_LANES, now);
+            }
+            v_store(s->state + r * RNG_LANES + lane, now);
+        }
     }
 }
 
-const struct sampler_kernel ISA_NAME(sampler_kernel) = {uniforms, normals, interpolate, accept};
+const struct sampler_kernel ISA_NAME(sampler_kernel) = {
+    uniforms, normals, interpolate, propose_v, logistic_density, log_mixture, accept};

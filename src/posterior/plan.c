@@ -91,6 +91,23 @@ static void plan_chain(struct plan *plan)
     p->gap = plan->gap;
 }
 
+static bool takes_value(const struct conditions *c)
+{
+    for (size_t i = 0; i < c->count; i++)
+        if (c->list[i].measure->allowed & ARG_VALUE)
+            return true;
+    return false;
+}
+
+/* Gains and responses against a value are averages of exact conditional probabilities. */
+static bool wants_moments(const struct design *d)
+{
+    bool wanted = design_has_gain(d) || (d->has_final && takes_value(&d->final_success));
+    for (size_t i = 0; i < d->decisions; i++)
+        wanted = wanted || takes_value(&d->decision[i].when);
+    return wanted && d->type == ENDPOINT_CONTINUOUS;
+}
+
 enum status plan_new(struct plan **out, const struct design *d, const struct model *m,
                      struct err *e)
 {
@@ -112,6 +129,7 @@ enum status plan_new(struct plan **out, const struct design *d, const struct mod
     p->chain = m->curve->kind != CURVE_BASIS;
     p->reference = d->reference_level;
     p->sd_fixed = 1.0;
+    plan->moments = wants_moments(d);
     size_t columns = 0;
     for (size_t i = 0; i < m->parameters; i++) {
         const struct prior *prior = &m->prior[i];

@@ -14,6 +14,7 @@ struct plan {
     double value[LEVELS_MAX], carry[LEVELS_MAX], gap[LEVELS_MAX];
     struct coordinate_range range;
     bool sd_vanishes; /* the prior on sd vanishes at 0 */
+    bool moments;     /* some result averages exact conditional probabilities */
 };
 
 /* The problem of one fit: the plan's with data; y needs room for the levels. */

@@ -89,9 +89,9 @@ static void store_reserve(struct store *s, const struct posterior *p, size_t tot
         return;
     grow_rows(&s->link, K, s, capacity);
     grow_rows(&s->parameter, p->plan->m->parameters, s, capacity);
-    if (p->problem.binary) {
+    if (p->problem.binary)
         grow_rows(&s->response, K, s, capacity);
-    } else {
+    if (p->plan->moments) {
         grow_rows(&s->mean, K, s, capacity);
         grow_rows(&s->sd, K, s, capacity);
         if (p->problem.reference >= 0) {
@@ -310,7 +310,7 @@ bool posterior_curve_at(const struct plan *plan, const struct draws *d, double x
     for (size_t i = 0; i < d->n; i++) {
         const double *shape[SHAPES_MAX] = {NULL, NULL}, *log_shape[SHAPES_MAX] = {NULL, NULL};
         double logs[SHAPES_MAX];
-        const double *beta[COLUMNS_MAX];
+        const double *beta[COLUMNS_MAX] = {NULL};
         size_t row = 0, shapes = 0, columns = 0;
         for (const struct parameter *a = p->curve->parameters; a->name; a++, row++) {
             const double *value = d->parameter + row * d->stride + i;

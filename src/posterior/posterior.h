@@ -28,7 +28,8 @@ struct draws {
     const double *link;      /* [level] mean, or logit of the rate */
     const double *response;  /* [level] mean or rate (continuous: the same array as link) */
     const double *parameter; /* [parameter] in the order of the model's parameter list */
-    /* Continuous endpoints only, else NULL: exact Gaussian moments given the draw's (phi, sd):
+    /* Continuous endpoints only, and only where the design asks for a gain or a response against a
+     * value; else NULL. Exact Gaussian moments given the draw's (phi, sd):
      * of theta_level, and of theta_level - theta_reference where the design's reference is a level
      * (else NULL; rows of the reference itself are 0). Not turned: a lower-is-better response
      * stays. */

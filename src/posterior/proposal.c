@@ -137,7 +137,7 @@ static double parabola(struct proposal_work *w, size_t i)
         return 0.0;
     double step = slope * scale * scale;
     step = step > 3.0 * d ? 3.0 * d : step < -3.0 * d ? -3.0 * d : step;
-    w->weight[i] = w->at[i] + 0.5 * slope * step + vm_log(scale);
+    w->weight[i] = w->at[i] + 0.5 * slope * step; /* and ln scale, when the search is over */
     w->mode[i] += step;
     w->scale[i] = scale;
     return fabs(step) / scale;
@@ -169,6 +169,9 @@ static void weigh_by_mode(const struct problem *p, struct proposal_work *w, size
         if (worst < 1.0)
             break;
     }
+    p->math->log(w->pt.n, w->scale, w->at);
+    for (size_t i = 0; i < w->pt.n; i++)
+        w->weight[i] += w->at[i];
 }
 
 /* v integrated over its prior by equally likely points */

@@ -148,14 +148,13 @@ static void propose_shapes_from_prior(struct sampler *s)
 /* v by the logistic quantile, or from its prior */
 static void propose_v(struct sampler *s, const double *mode, const double *scale)
 {
-    double *ratio = s->scratch;
+    const struct problem *p = s->p;
+    p->kernel->uniforms(&s->rng, BLOCK, s->uniform_v);
+    if (!s->q->v_from_prior)
+        p->kernel->propose_v(BLOCK, s->uniform_v, mode, scale, s->pt.v);
     for (size_t i = 0; i < BLOCK; i++)
-        ratio[i] = s->uniform_v[i] / (1.0 - s->uniform_v[i]);
-    s->p->math->log(BLOCK, ratio, ratio);
-    for (size_t i = 0; i < BLOCK; i++)
-        s->pt.v[i] = s->q->v_from_prior || from_prior(s, i)
-                         ? vm_log(prior_quantile(s->p->sd_prior, s->uniform_v[i]))
-                         : mode[i] + scale[i] * ratio[i];
+        if (s->q->v_from_prior || from_prior(s, i))
+            s->pt.v[i] = vm_log(prior_quantile(p->sd_prior, s->uniform_v[i]));
 }
 
 /* log q of the mixture of grid and prior at the block's points; density: of the grid */
@@ -163,28 +162,17 @@ static void log_proposal(struct sampler *s, double *density, const double *mode,
                          const double *scale, double *out)
 {
     const struct problem *p = s->p;
-    double *e = s->scratch;
-    if (p->sd_free && !s->q->v_from_prior) { /* times the logistic density of v */
-        for (size_t i = 0; i < BLOCK; i++) {
-            const double t = (s->pt.v[i] - mode[i]) / scale[i];
-            e[i] = t < 0.0 ? t : -t;
-        }
-        p->math->exp(BLOCK, e, e);
-        for (size_t i = 0; i < BLOCK; i++)
-            density[i] *= e[i] / (scale[i] * ((1.0 + e[i]) * (1.0 + e[i])));
+    double *prior_v = s->scratch;
+    if (p->sd_free && !s->q->v_from_prior) {
+        p->kernel->logistic_density(BLOCK, s->pt.v, mode, scale, density);
     } else if (p->sd_free) {
         for (size_t i = 0; i < BLOCK; i++)
-            e[i] = s->pt.log_prior[i] - s->pt.log_prior_shape[i];
-        p->math->exp(BLOCK, e, e);
+            prior_v[i] = s->pt.log_prior[i] - s->pt.log_prior_shape[i];
+        p->math->exp(BLOCK, prior_v, prior_v);
         for (size_t i = 0; i < BLOCK; i++)
-            density[i] *= e[i];
+            density[i] *= prior_v[i];
     }
-    p->math->exp(BLOCK, s->pt.log_prior, e);
-    for (size_t i = 0; i < BLOCK; i++) {
-        const double q = density[i] * (1.0 - 1.0 / PRIOR_EVERY) + e[i] * (1.0 / PRIOR_EVERY);
-        out[i] = q > 1e-300 ? q : 1e-300;
-    }
-    p->math->log(BLOCK, out, out);
+    p->kernel->log_mixture(BLOCK, density, s->pt.log_prior, out);
 }
 
 /* The pseudo-data of the node nearest to each point. */
@@ -265,10 +253,8 @@ static void propose(struct sampler *s)
     propose_shapes(s);
     propose_shapes_from_prior(s);
     p->kernel->interpolate(s->q, BLOCK, s->pt.coord, density, mode, scale);
-    if (p->sd_free) {
-        p->kernel->uniforms(&s->rng, BLOCK, s->uniform_v);
+    if (p->sd_free)
         propose_v(s, mode, scale);
-    }
     if (p->binary)
         gather_pseudo(s);
     density_at(p, &s->pt);

@@ -63,7 +63,12 @@ struct sampler_kernel {
     /* interpolated weight (density of the grid), mode and scale at the block's coordinates */
     void (*interpolate)(const struct proposal *q, size_t n, double *const coord[SHAPES_MAX],
                         double *density, double *mode, double *scale);
-    /* 1 where the proposal is taken; moves `state` and fills `accepted` */
+    void (*propose_v)(size_t n, const double *u, const double *mode, const double *scale,
+                      double *v);
+    void (*logistic_density)(size_t n, const double *v, const double *mode, const double *scale,
+                             double *density);
+    void (*log_mixture)(size_t n, const double *density, const double *log_prior, double *out);
+    /* scratch: 1 where the proposal is taken; moves `state` and fills `accepted` */
     void (*accept)(struct sampler *s);
 };
 extern const struct sampler_kernel sampler_kernel_sse2, sampler_kernel_avx2;

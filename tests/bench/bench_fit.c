@@ -2,6 +2,7 @@
 /* bench_fit.c: microseconds, effective draws a second and Kish's share of one fit of 1,000 draws,
  * for every curve x endpoint, over named data sets (informative, flat, sparse). */
 #include <stdio.h>
+#include <string.h>
 #include <time.h>
 
 #include "analysis/vocabulary_rows.h"
@@ -129,10 +130,13 @@ static void run_case(const struct bench_case *c)
     design_free(d);
 }
 
-int main(void)
+/* An argument names one curve; "binary" or "continuous" may follow it. */
+int main(int count, char **words)
 {
     base_init();
     for (size_t i = 0; i < COUNT_OF(cases); i++)
-        run_case(&cases[i]);
+        if ((count < 2 || strcmp(words[1], cases[i].curve) == 0) &&
+            (count < 3 || (strcmp(words[2], "binary") == 0) == cases[i].binary))
+            run_case(&cases[i]);
     return 0;
 }
