@@ -87,7 +87,7 @@ IS_CLANG := $(findstring clang,$(CC))
 
 LIBRARIES := gsl libcjson libcrypto
 CPPFLAGS += -D_POSIX_C_SOURCE=200809L -Isrc -I. $(shell pkg-config --cflags $(LIBRARIES))
-CFLAGS ?= -O2 -g
+CFLAGS ?= -O3 -g
 # The same bytes from every compiler: no contraction of a*b+c, and sqrt as one instruction.
 FIXED := -std=c11 -ffp-contract=off -fno-math-errno -fopenmp
 FLAGS := $(FIXED) $(WARNINGS) $(CFLAGS)

@@ -45,6 +45,19 @@ LANE_FN vd value_at(const struct problem *p, const struct observations *o, size_
     return o->precision ? v_set(p->y[k]) : v_load(o->y + k * n + i);
 }
 
+/* Of a basis the sums are taken with weights in units of the point's precision, which multiplies
+ * the sums: n_k for a continuous endpoint, the pseudo-weights (and unit 1) for a binary one. */
+LANE_FN vd unit_weight_at(const struct problem *p, const struct observations *o, size_t n, size_t k,
+                          size_t i)
+{
+    return o->precision ? v_set(p->n[k]) : v_load(o->w + k * n + i);
+}
+
+LANE_FN vd unit_at(const struct observations *o, size_t i)
+{
+    return o->precision ? v_load(o->precision + i) : v_set(1);
+}
+
 /* y - X m, the prior mean taken off */
 LANE_FN vd residual_at(const struct problem *p, const struct observations *o, size_t n, size_t k,
                        size_t i, const double *x, size_t q)
@@ -63,14 +76,14 @@ LANE_FN void basis_means(const struct problem *p, const struct observations *o, 
     for (size_t j = 0; j < q; j++)
         x_sum[j] = v_set(0);
     for (size_t k = 0; k < p->levels; k++) {
-        const vd w = weight_at(p, o, n, k, i);
+        const vd w = unit_weight_at(p, o, n, k, i);
         w_sum += w;
         r_sum += w * residual_at(p, o, n, k, i, x, q);
         for (size_t j = 0; j < q; j++)
             x_sum[j] += w * v_load(x + (j * p->levels + k) * n + i);
     }
     const vd inverse = v_pick(w_sum > 0.0, 1.0 / v_pick(w_sum > 0.0, w_sum, v_set(1)), v_set(0));
-    *W = w_sum;
+    *W = w_sum * unit_at(o, i);
     *rbar = r_sum * inverse;
     for (size_t j = 0; j < q; j++)
         xbar[j] = x_sum[j] * inverse;
@@ -87,7 +100,7 @@ LANE_FN void basis_equations(const struct problem *p, const struct observations 
             H[c++] = v_set(0);
     }
     for (size_t k = 0; k < p->levels; k++) {
-        const vd w = weight_at(p, o, n, k, i);
+        const vd w = unit_weight_at(p, o, n, k, i);
         const vd r = residual_at(p, o, n, k, i, x, q) - rbar;
         vd dx[SLOPES_MAX];
         for (size_t a = 0, c = 0; a < q; a++) {
@@ -98,10 +111,11 @@ LANE_FN void basis_equations(const struct problem *p, const struct observations 
                 H[c++] += wx * dx[b];
         }
     }
+    const vd unit = unit_at(o, i);
     for (size_t a = 0, c = 0; a < q; a++) {
-        h[a] = p->scale[a + 1] * (h[a] + kappa * xbar[a] * rbar);
+        h[a] = p->scale[a + 1] * (unit * h[a] + kappa * xbar[a] * rbar);
         for (size_t b = 0; b <= a; b++, c++)
-            H[c] = p->scale[a + 1] * p->scale[b + 1] * (H[c] + kappa * xbar[a] * xbar[b]) +
+            H[c] = p->scale[a + 1] * p->scale[b + 1] * (unit * H[c] + kappa * xbar[a] * xbar[b]) +
                    (a == b ? 1.0 : 0.0);
     }
 }
@@ -146,13 +160,17 @@ LANE_FN void basis_factor_at(const struct problem *p, size_t n, size_t i, const 
         penalty += h[j] * h[j];
     }
     const vd z0 = p->scale[0] * W * centre / spread0;
-    penalty += z0 * z0;
+    vd misfit = v_set(0), b[SLOPES_MAX];
+    for (size_t j = 0; j < q; j++)
+        b[j] = p->mean[j + 1] + p->scale[j + 1] * h[j];
+    const vd b0 = p->mean[0] + p->scale[0] * z0;
     for (size_t k = 0; k < p->levels; k++) {
-        vd e = residual_at(p, o, n, k, i, x, q) - p->scale[0] * z0;
+        vd e = value_at(p, o, n, k, i) - b0;
         for (size_t j = 0; j < q; j++)
-            e -= p->scale[j + 1] * h[j] * v_load(x + (j * p->levels + k) * n + i);
-        penalty += weight_at(p, o, n, k, i) * e * e;
+            e -= b[j] * v_load(x + (j * p->levels + k) * n + i);
+        misfit += unit_weight_at(p, o, n, k, i) * e * e;
     }
+    penalty += z0 * z0 + unit_at(o, i) * misfit;
     v_store(log_m + i, -0.5 * (v_log_core(determinant) + penalty));
     v_store(factor + i, W);
     v_store(factor + n + i, rbar);

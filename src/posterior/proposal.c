@@ -152,11 +152,14 @@ static double largest(const double *x, size_t n, size_t *where)
     return x[*where];
 }
 
-static void weigh_by_mode(const struct problem *p, struct proposal_work *w, size_t count)
+/* At most `rounds` steps of the search; true when every node that matters has settled. */
+static bool weigh_by_mode(const struct problem *p, struct proposal_work *w, size_t count,
+                          int rounds)
 {
     size_t best;
-    for (int round = 0; round < ROUNDS; round++) {
-        double worst = 0.0;
+    double worst = 0.0;
+    for (int round = 0; round < rounds; round++) {
+        worst = 0.0;
         evaluate_v(p, w, 0.0, w->at);
         evaluate_v(p, w, -1.0, w->below);
         evaluate_v(p, w, 1.0, w->above);
@@ -172,6 +175,7 @@ static void weigh_by_mode(const struct problem *p, struct proposal_work *w, size
     p->math->log(w->pt.n, w->scale, w->at);
     for (size_t i = 0; i < w->pt.n; i++)
         w->weight[i] += w->at[i];
+    return worst < 1.0;
 }
 
 /* v integrated over its prior by equally likely points */
@@ -249,9 +253,11 @@ static void weigh_binary(const struct problem *p, struct proposal_work *w)
         w->weight[i] = pt->log_prior[i] + pt->log_m[i] + w->likelihood[i];
 }
 
-static void weigh_nodes(const struct proposal *q, const struct problem *p, struct proposal_work *w)
+/* false: the search for the mode of v, cut short while the box is still moving, has to go on */
+static bool weigh_nodes(const struct proposal *q, const struct problem *p, struct proposal_work *w,
+                        int rounds)
 {
-    w->pt.same_shapes = false;
+    bool settled = true;
     if (p->binary) {
         weigh_binary(p, w);
     } else if (!p->sd_free) {
@@ -261,11 +267,12 @@ static void weigh_nodes(const struct proposal *q, const struct problem *p, struc
     } else if (q->v_from_prior) {
         weigh_by_prior(p, w);
     } else {
-        weigh_by_mode(p, w, node_count(q));
+        settled = weigh_by_mode(p, w, node_count(q), rounds);
     }
     for (size_t i = 0; i < w->pt.n; i++)
         if (!(w->weight[i] < INFINITY))
             w->weight[i] = -INFINITY; /* a NaN holds no mass */
+    return settled;
 }
 
 /* Index range of dimension d whose nodes lie within KEEP of the top. */
@@ -411,9 +418,13 @@ void proposal_build(struct proposal *q, const struct problem *p, const struct co
         start_v(p, w);
     for (int pass = 0; pass < PASSES; pass++) {
         place_nodes(q, &box, &w->pt);
-        weigh_nodes(q, p, w);
-        if (pass == PASSES - 1 || !zoom(q, p, w->weight, r, &box))
+        w->pt.same_shapes = false;
+        const bool settled = weigh_nodes(q, p, w, 1);
+        if (pass == PASSES - 1 || !zoom(q, p, w->weight, r, &box)) {
+            if (!settled)
+                weigh_nodes(q, p, w, ROUNDS);
             break;
+        }
         if (p->sd_free && !q->v_from_prior)
             restart_v(w, node_count(q));
     }
