@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* analysis.h: one analysis of the data at a cut: the single door for live data and simulated trials.
+/* analysis.h: one analysis of the data at a cut: the single door for live data and simulated
+ * trials.
  *
  * analysis_run fits, judges every target and decision, and computes the next shares. What it
  * returns is plain numbers: reports compute nothing. NaN stands for "does not exist" and is written
@@ -27,21 +28,21 @@ struct level_result {
     double pr_positive;     /* Pr(gain > 0); 0 at the reference itself */
     double *pr_target, *pr_meets; /* owned, one per target; 0 for the control and closed levels */
     double *mcse_target, *mcse_meets;
-    double *prior_pr_target;      /* owned or NULL */
-    double next_share;      /* NaN: none (last analysis, distrusted) */
-    bool open;              /* active levels: not closed by --close; the control is always open */
+    double *prior_pr_target; /* owned or NULL */
+    double next_share;       /* NaN: none (last analysis, distrusted) */
+    bool open;               /* active levels: not closed by --close; the control is always open */
 };
 
 struct target_result {
-    int selected;        /* level index or LEVEL_NONE */
-    double pr_selected;  /* pr_target of the selected level; 0 when none */
-    double pr_none, mcse;/* mcse of pr_selected (of pr_none when none is selected) */
-    bool close;          /* lead over the runner-up under 3 Monte Carlo standard errors */
-    bool imprecise;      /* some figure of this target has mcse > precision */
+    int selected;         /* level index or LEVEL_NONE */
+    double pr_selected;   /* pr_target of the selected level; 0 when none */
+    double pr_none, mcse; /* mcse of pr_selected (of pr_none when none is selected) */
+    bool close;           /* lead over the runner-up under 3 Monte Carlo standard errors */
+    bool imprecise;       /* some figure of this target has mcse > precision */
 };
 
 struct parameter_result {
-    const char *name;    /* borrowed from the design */
+    const char *name; /* borrowed from the design */
     struct spread value;
     struct convergence diag; /* NaN for fixed */
     double sd_over_prior_sd; /* NaN for fixed, or where the prior sd does not exist */
@@ -49,11 +50,11 @@ struct parameter_result {
 
 struct condition_result {
     double value, mcse;
-    int level;       /* the level it looked at, or LEVEL_NONE */
+    int level; /* the level it looked at, or LEVEL_NONE */
     bool met, close, imprecise;
 };
 struct decision_result {
-    bool applies, met; /* met: whether the conditions hold, applies or not */
+    bool applies, met;                  /* met: whether the conditions hold, applies or not */
     struct condition_result *condition; /* owned; as many as the decision has */
 };
 
@@ -83,7 +84,7 @@ struct analysis_diagnostics {
     double second_difference; /* largest absolute difference of a probability or measure; NaN */
     bool trusted, imprecise;
     size_t warnings;
-    char **warning;           /* owned sentences */
+    char **warning; /* owned sentences */
 };
 
 struct analysis {
@@ -93,8 +94,8 @@ struct analysis {
     struct level_result *level;
     struct target_result *target;
     struct parameter_result *parameter;
-    struct decision_result *decision;       /* the design's decisions, in order */
-    struct decision_result final_success;   /* condition NULL without `final` */
+    struct decision_result *decision;     /* the design's decisions, in order */
+    struct decision_result final_success; /* condition NULL without `final` */
     enum recommendation recommendation;
     struct curve_result curve;
     struct analysis_diagnostics diagnostics;
@@ -104,18 +105,18 @@ struct analysis {
 };
 
 struct analysis_request {
-    long number;         /* analysis number K, or K + 1 for the last */
+    long number; /* analysis number K, or K + 1 for the last */
     bool final;
-    double point;        /* planned point in its unit; INFINITY for the last */
-    const bool *closed;  /* one per level, or NULL */
-    bool adapted;        /* adapted shares may be used: the `start` subjects were all randomized */
-    double randomized;   /* n for power "n/2N" */
-    double observed;     /* outcomes in hand, for min_observed */
+    double point;       /* planned point in its unit; INFINITY for the last */
+    const bool *closed; /* one per level, or NULL */
+    bool adapted;       /* adapted shares may be used: the `start` subjects were all randomized */
+    double randomized;  /* n for power "n/2N" */
+    double observed;    /* outcomes in hand, for min_observed */
     uint64_t seed;
-    uint16_t scenario;   /* 0 live */
-    uint32_t trial;      /* 0 live */
-    bool live;           /* adaptive length and second method; else the simulated fit */
-    int threads;         /* for diagnostics; results never depend on it */
+    uint16_t scenario; /* 0 live */
+    uint32_t trial;    /* 0 live */
+    bool live;         /* adaptive length and second method; else the simulated fit */
+    int threads;       /* for diagnostics; results never depend on it */
 };
 
 /* Workspace for repeated analyses of one design (one per thread). */
@@ -126,21 +127,21 @@ void analyst_free(struct analyst *w);
 struct draws analyst_draws(const struct analyst *w);
 
 /* Runs one analysis into *out (analysis_init first; reuse is fine). STATUS_OK, STATUS_DISTRUSTED
- * (everything is filled in, recommendation undetermined, shares NaN), or STATUS_INPUT for a posterior that
- * may be improper. */
+ * (everything is filled in, recommendation undetermined, shares NaN), or STATUS_INPUT for a
+ * posterior that may be improper. */
 enum status analysis_run(struct analysis *out, struct analyst *w, const struct level_data *data,
                          const struct analysis_request *r, struct err *e);
 void analysis_init(struct analysis *a, const struct design *d);
 void analysis_release(struct analysis *a);
 
 /* What the priors imply before any data, for `check`: level responses, gains, pr_target, pr_meets,
- * Pr(none). Fills level[], target[] of *out only. STATUS_INPUT with a fault where this version cannot
- * compute the priors. */
+ * Pr(none). Fills level[], target[] of *out only. STATUS_INPUT with a fault where this version
+ * cannot compute the priors. */
 enum status analysis_prior(struct analysis *out, struct analyst *w, const struct design *d,
                            struct err *e);
 
-/* The true target level of a scenario: index or LEVEL_NONE; comparisons carry the tolerance 1e-9 x max(1, |effect|,
- * largest |gain|). Response scale in, `response` has one entry per level. */
+/* The true target level of a scenario: index or LEVEL_NONE; comparisons carry the tolerance 1e-9 x
+ * max(1, |effect|, largest |gain|). Response scale in, `response` has one entry per level. */
 int analysis_true_level(const struct design *d, size_t target, const double *response);
 
 #endif

@@ -10,14 +10,14 @@
 /* a row */
 #define CSV_MSG_UTF8 "byte 0x%02x is not valid UTF-8; save the file as UTF-8"
 #define CSV_MSG_NUL "a NUL byte, which no text file holds"
-#define CSV_MSG_QUOTE_INSIDE                                                                       \
-    "field %zu has a double quote but does not start with one; put the whole field in double "    \
+#define CSV_MSG_QUOTE_INSIDE                                                                   \
+    "field %zu has a double quote but does not start with one; put the whole field in double " \
     "quotes and write each quote inside it twice"
-#define CSV_MSG_QUOTE_AFTER                                                                        \
-    "field %zu goes on after its closing double quote; only a comma or the end of the line may "  \
+#define CSV_MSG_QUOTE_AFTER                                                                      \
+    "field %zu goes on after its closing double quote; only a comma or the end of the line may " \
     "follow (a quote inside a field is written twice)"
-#define CSV_MSG_QUOTE_OPEN                                                                         \
-    "field %zu starts with a double quote that is never closed; close it before the next comma "  \
+#define CSV_MSG_QUOTE_OPEN                                                                       \
+    "field %zu starts with a double quote that is never closed; close it before the next comma " \
     "or line end"
 #define CSV_MSG_FIELDS "the row has %zu %s where the header has %zu"
 

@@ -30,7 +30,7 @@ struct reader {
     struct csv_row *row; /* the one being filled by libcsv */
 };
 
-#define FAULT(r, on_line, ...)                                                                     \
+#define FAULT(r, on_line, ...) \
     ((void)err_add((r)->e, STATUS_INPUT, (r)->file, (on_line), NULL, __VA_ARGS__))
 
 static void row_release(struct csv_row *row)

@@ -26,9 +26,9 @@ struct csv_table {
                              fields only when a fault was added */
 };
 
-#define CSV_TABLE_INIT                                                                             \
-    {                                                                                              \
-        0, NULL, 0, 0, 0, NULL                                                                     \
+#define CSV_TABLE_INIT         \
+    {                          \
+        0, NULL, 0, 0, 0, NULL \
     }
 
 void csv_table_release(struct csv_table *t);

@@ -30,15 +30,15 @@ struct outdir;
  * among them. private_files: mode 0600 (else 0644, less the umask). */
 enum status outdir_open(struct outdir **out, const char *path, const char *main_file,
                         const char *const *files, bool force, bool private_files, struct err *e);
-enum status outdir_add(struct outdir *d, const char *name, const struct text *bytes,
-                       struct err *e);
+enum status outdir_add(struct outdir *d, const char *name, const struct text *bytes, struct err *e);
 enum status outdir_commit(struct outdir *d, struct err *e);
 void outdir_free(struct outdir *d); /* abandons what was not committed; NULL is fine */
 
 /* File name without directories and without its last extension, e.g. "a/b.json" -> "b". */
 char *file_stem(const char *path);
 
-/* Test hook: the n-th write, fsync or rename from now on fails with `error_number` (n = 0: none). */
+/* Test hook: the n-th write, fsync or rename from now on fails with `error_number` (n = 0: none).
+ */
 void file_fail_at(unsigned long n, int error_number);
 
 #endif

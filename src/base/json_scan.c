@@ -250,16 +250,16 @@ static bool scan_word(struct scan *s)
 
 static bool at_comment(const struct scan *s)
 {
-    return peek(s) == '#' || (peek(s) == '/' && s->end - s->at > 1 &&
-                              (s->at[1] == '/' || s->at[1] == '*'));
+    return peek(s) == '#' ||
+           (peek(s) == '/' && s->end - s->at > 1 && (s->at[1] == '/' || s->at[1] == '*'));
 }
 
 /* The fault for a place where `message` says what is needed: comments and single quotes, the two
  * habits from other notations, have their own. */
-#define STOP_NEEDED(s, message)                                                                    \
-    (at_comment(s)       ? STOP(s, JSON_MSG_COMMENT)                                               \
-     : peek(s) == '\'' ? STOP(s, JSON_MSG_SINGLE_QUOTE)                                            \
-                         : STOP_FOUND(s, message))
+#define STOP_NEEDED(s, message)                         \
+    (at_comment(s)     ? STOP(s, JSON_MSG_COMMENT)      \
+     : peek(s) == '\'' ? STOP(s, JSON_MSG_SINGLE_QUOTE) \
+                       : STOP_FOUND(s, message))
 
 static bool scan_member(struct scan *s)
 {

@@ -11,15 +11,15 @@
 
 #include <stddef.h>
 
-void *mem_new(size_t count, size_t size);                      /* zeroed */
-void *mem_grow(void *old, size_t count, size_t size);          /* realloc; new bytes unset */
-void *mem_aligned(size_t count, size_t size);                  /* zeroed, on a 64-byte boundary */
-char *mem_text(const char *s);                                 /* copy of s; NULL gives NULL */
-char *mem_text_n(const char *s, size_t length);                /* copy, NUL added */
-void mem_free(void *p);                                        /* any of the above; NULL is fine */
+void *mem_new(size_t count, size_t size);             /* zeroed */
+void *mem_grow(void *old, size_t count, size_t size); /* realloc; new bytes unset */
+void *mem_aligned(size_t count, size_t size);         /* zeroed, on a 64-byte boundary */
+char *mem_text(const char *s);                        /* copy of s; NULL gives NULL */
+char *mem_text_n(const char *s, size_t length);       /* copy, NUL added */
+void mem_free(void *p);                               /* any of the above; NULL is fine */
 
-/* What every function above does when memory is refused: message, `_exit(4)`. Also for libraries that
- * report lack of memory by themselves. */
+/* What every function above does when memory is refused: message, `_exit(4)`. Also for libraries
+ * that report lack of memory by themselves. */
 _Noreturn void mem_exhausted(void);
 
 /* Test hook: the n-th allocation from now on is refused (0: none). */

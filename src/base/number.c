@@ -76,8 +76,8 @@ static bool is_power_of_two(double x)
 
 /* The fewest digits that read back as x > 0, the closest to x among them. A decimal of up to
  * DBL_DIG = 15 digits survives the way to a normal double and back, so 15 digits decide for all
- * shorter lengths at once. At a power of two the doubles above lie twice as far apart as those below:
- * there the closest 16 digits may fail while their upper neighbour reads back (2^-44). */
+ * shorter lengths at once. At a power of two the doubles above lie twice as far apart as those
+ * below: there the closest 16 digits may fail while their upper neighbour reads back (2^-44). */
 static void decimal_shortest(struct decimal *d, double x)
 {
     int count = x < DBL_MIN ? 1 : DBL_DIG;

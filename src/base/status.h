@@ -34,9 +34,9 @@ struct err {
     struct fault *faults; /* owned, in the order found */
 };
 
-#define ERR_INIT                                                                                   \
-    {                                                                                              \
-        STATUS_OK, 0, 0, NULL                                                                      \
+#define ERR_INIT              \
+    {                         \
+        STATUS_OK, 0, 0, NULL \
     }
 
 void err_release(struct err *e);

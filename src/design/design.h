@@ -45,21 +45,21 @@ struct target {
     char *name;
     const struct target_rule *rule;
     double fraction, effect, margin;
-    int of;                /* level index or OF_BEST */
-    bool by_meets;         /* "select": {"meets": p} */
+    int of;        /* level index or OF_BEST */
+    bool by_meets; /* "select": {"meets": p} */
     double meets;
-    bool link;             /* "scale": "link" */
+    bool link; /* "scale": "link" */
 };
 
 struct condition {
     const struct measure *measure;
-    int target;     /* index or -1 */
-    int level;      /* index, LEVEL_ANY or LEVEL_NONE */
-    double gain;    /* default 0 */
+    int target;  /* index or -1 */
+    int level;   /* index, LEVEL_ANY or LEVEL_NONE */
+    double gain; /* default 0 */
     double value;
     double per_arm, alpha;
     bool link;
-    bool above;     /* true: value > threshold, false: value < threshold */
+    bool above; /* true: value > threshold, false: value < threshold */
     double threshold;
 };
 
@@ -85,10 +85,10 @@ enum counted { COUNTED_RANDOMIZED, COUNTED_OBSERVED, COUNTED_TIME };
 
 struct analyses {
     enum counted counted;
-    size_t count;   /* planned interim analyses that will be held by count; 0: none planned.
-                       first_at/every over time end only with enrolment: count is then the number of
-                       points before the expected end of enrolment and open_ended is true */
-    double *at;     /* planned points, increasing */
+    size_t count; /* planned interim analyses that will be held by count; 0: none planned.
+                     first_at/every over time end only with enrolment: count is then the number of
+                     points before the expected end of enrolment and open_ended is true */
+    double *at;   /* planned points, increasing */
     bool open_ended;
     double first_at, every; /* 0 when a list was given */
     double lag;
@@ -98,8 +98,8 @@ enum power_kind { POWER_NUMBER, POWER_N_OVER_2N };
 enum control_share_kind { CONTROL_SHARE_NUMBER, CONTROL_SHARE_AS_LARGEST, CONTROL_SHARE_NONE };
 
 struct allocation {
-    double *ratio;  /* one per level */
-    double block;   /* 1: independent draws */
+    double *ratio; /* one per level */
+    double block;  /* 1: independent draws */
     double start_per_level;
     bool adapts;
     int adapt_target; /* index into targets */
@@ -124,11 +124,11 @@ enum truth_kind { TRUTH_MEANS, TRUTH_CURVE, TRUTH_PRIOR };
 struct scenario {
     char *name;
     enum truth_kind kind;
-    double *response;  /* TRUTH_MEANS and TRUTH_CURVE: true mean or rate by level, all levels */
+    double *response; /* TRUTH_MEANS and TRUTH_CURVE: true mean or rate by level, all levels */
     const struct curve *curve;
-    double *sd;        /* one per level, continuous; NULL for TRUTH_PRIOR */
+    double *sd; /* one per level, continuous; NULL for TRUTH_PRIOR */
     double trend;
-    bool is_null;      /* as given, else largest true gain <= 0 (false when there are no gains) */
+    bool is_null; /* as given, else largest true gain <= 0 (false when there are no gains) */
     bool null_given;
     struct accrual accrual; /* count 0: the design's */
     double *dropout;        /* one per level, or NULL: the design's */
@@ -143,7 +143,7 @@ struct level_alias {
 };
 
 struct design {
-    char *file;  /* as the user named it */
+    char *file; /* as the user named it */
     char sha256[SHA256_HEX], resolved_sha256[SHA256_HEX];
     struct text resolved; /* RFC 8785 form with defaults in and notes out */
 
@@ -151,10 +151,10 @@ struct design {
     char *quantity, *unit; /* "dose" or "duration"; unit may be "" */
     size_t levels;
     struct level *level;
-    int control;           /* index or LEVEL_NONE */
+    int control; /* index or LEVEL_NONE */
     bool control_on_curve;
-    int reference_level;   /* what gains are taken against: the control, or the `reference` label;
-                              LEVEL_NONE: see has_reference_number */
+    int reference_level; /* what gains are taken against: the control, or the `reference` label;
+                            LEVEL_NONE: see has_reference_number */
     bool has_reference_number;
     double reference_number;
     char *time_unit;
@@ -204,9 +204,9 @@ void design_free(struct design *d);
 /* The JSON Schema (2020-12), made from the same field table as the parser. */
 void design_schema(struct text *out, const struct vocabulary *v);
 
-bool design_has_gain(const struct design *d);          /* a control or a reference is there */
+bool design_has_gain(const struct design *d);                /* a control or a reference is there */
 bool design_is_active(const struct design *d, size_t level); /* not the control */
-double design_sign(const struct design *d);            /* +1 higher is better, -1 lower */
+double design_sign(const struct design *d);                  /* +1 higher is better, -1 lower */
 /* Levels on the curve: all, or all but a control off the curve. `value` needs room for
  * LEVELS_MAX. */
 struct curve_levels design_curve_levels(const struct design *d, const struct model *m,

@@ -13,17 +13,17 @@
 enum { PRIOR_ARGS = 3 };
 
 struct prior_arg {
-    const char *key;  /* "mean", "sd", "shape", ...: names fixed by the interface */
-    bool positive;    /* must be > 0 */
+    const char *key; /* "mean", "sd", "shape", ...: names fixed by the interface */
+    bool positive;   /* must be > 0 */
     const char *help;
 };
 
 struct prior_family {
     const char *key;
-    const char *sentence; /* printf-free description for people, e.g. "normal" */
+    const char *sentence;              /* printf-free description for people, e.g. "normal" */
     struct prior_arg args[PRIOR_ARGS]; /* key NULL ends the list */
-    double support_low;                /* -INFINITY or 0: lowest x with density > 0 (normal, uniform,
-                                          student_t: -INFINITY; uniform is checked by its min) */
+    double support_low; /* -INFINITY or 0: lowest x with density > 0 (normal, uniform,
+                           student_t: -INFINITY; uniform is checked by its min) */
     /* Normalised log density at n points; log_x may be NULL when support_low is -INFINITY. No
      * truncation. NULL: this version cannot sample it (refused by analyze). */
     void (*log_density)(const double *arg, size_t n, const double *x, const double *log_x,

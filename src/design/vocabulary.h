@@ -42,7 +42,8 @@ struct target_rule {
     void (*bar)(const struct target *t, const struct bar_inputs *in, size_t n, double *bar);
 };
 
-/* A decision measure. Exactly one of target and level for pr_gain; other rows take what they say. */
+/* A decision measure. Exactly one of target and level for pr_gain; other rows take what they say.
+ */
 struct measure {
     const char *key;
     unsigned allowed, required; /* of ARG_TARGET ... ARG_SCALE; pr_gain: target or level */
@@ -55,8 +56,8 @@ struct measure {
 };
 
 struct vocabulary {
-    const struct target_rule *const *rules;  /* NULL-terminated */
-    const struct measure *const *measures;   /* NULL-terminated */
+    const struct target_rule *const *rules; /* NULL-terminated */
+    const struct measure *const *measures;  /* NULL-terminated */
 };
 
 #endif
