@@ -90,8 +90,8 @@ static void run_job(const struct trace *x, size_t job)
 static bool is_idle(const struct trace *x, size_t job)
 {
     const size_t levels = x->j->d->levels;
-    return job < 2 * levels &&
-           (!x->j->open[job % levels] || !design_is_active(x->j->d, job % levels));
+    const size_t level = job < levels ? job : job - levels;
+    return job < 2 * levels && (!x->j->open[level] || !design_is_active(x->j->d, level));
 }
 
 static void clear_job(const struct trace *x, size_t job)

@@ -98,7 +98,7 @@ static void solve(const struct shares *s)
  * addition to the least of each, up to its most, which is the problem above with equal weights. */
 static void fill_up(const struct shares *s)
 {
-    double addition[LEVELS_MAX], none[LEVELS_MAX] = {0}, room[LEVELS_MAX];
+    double addition[LEVELS_MAX] = {0}, none[LEVELS_MAX] = {0}, room[LEVELS_MAX] = {0};
     struct shares others = {0, addition, none, room, s->total};
     for (size_t k = 0; k < s->n; k++) {
         others.total -= s->a[k] > 0 ? s->most[k] : s->least[k];

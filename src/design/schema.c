@@ -110,7 +110,7 @@ static void write_required(struct writer *w, const struct field *f)
 /* {"required": ["key"]} for each of the keys of which exactly one must stand. */
 static void write_one_of(struct writer *w, const struct field *f)
 {
-    struct field row;
+    struct field row = {0};
 
     json_key(&w->json, "oneOf");
     json_open_inline(&w->json, '[');

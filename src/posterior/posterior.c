@@ -300,32 +300,45 @@ struct draws posterior_prior(struct posterior *p, size_t count, struct rng_key k
     return d;
 }
 
+/* The parameter rows of a basis curve, by role. */
+struct curve_rows {
+    const double *shape[SHAPES_MAX], *beta[COLUMNS_MAX];
+    size_t shapes, columns;
+};
+
+static struct curve_rows curve_rows(const struct curve *c, const struct draws *d)
+{
+    struct curve_rows r = {{NULL}, {NULL}, 0, 0};
+    const double *row = d->parameter;
+    for (const struct parameter *a = c->parameters; a->name; a++, row += d->stride)
+        if (a->role == ROLE_SHAPE)
+            r.shape[r.shapes++] = row;
+        else
+            r.beta[r.columns++] = row;
+    return r;
+}
+
 bool posterior_curve_at(const struct plan *plan, const struct draws *d, double x, double *out)
 {
     const struct problem *p = &plan->problem;
     if (p->chain)
         return false;
     const struct curve_levels at = {.count = 1, .value = &x, .shift = p->at.shift};
-    double basis[COLUMNS_MAX];
-    for (size_t i = 0; i < d->n; i++) {
-        const double *shape[SHAPES_MAX] = {NULL, NULL}, *log_shape[SHAPES_MAX] = {NULL, NULL};
-        double logs[SHAPES_MAX];
-        const double *beta[COLUMNS_MAX] = {NULL};
-        size_t row = 0, shapes = 0, columns = 0;
-        for (const struct parameter *a = p->curve->parameters; a->name; a++, row++) {
-            const double *value = d->parameter + row * d->stride + i;
-            if (a->role == ROLE_SHAPE) {
-                logs[shapes] = *value > 0.0 ? vm_log(*value) : -700.0;
-                log_shape[shapes] = &logs[shapes];
-                shape[shapes++] = value;
-            } else {
-                beta[columns++] = value;
-            }
-        }
-        p->curve->basis(&at, 1, shape, log_shape, basis);
-        out[i] = *beta[0];
-        for (size_t j = 1; j < columns; j++)
-            out[i] += *beta[j] * basis[j - 1];
+    const struct curve_rows r = curve_rows(p->curve, d);
+    double *log_shape[SHAPES_MAX], *basis = mem_new(COLUMNS_MAX * d->n, sizeof *basis);
+    for (size_t j = 0; j < SHAPES_MAX; j++) {
+        log_shape[j] = mem_new(d->n, sizeof *basis);
+        if (j < r.shapes)
+            p->math->log(d->n, r.shape[j], log_shape[j]);
     }
+    const double *const logs[SHAPES_MAX] = {log_shape[0], log_shape[1]};
+    p->curve->basis(&at, d->n, r.shape, logs, basis);
+    memcpy(out, d->parameter, d->n * sizeof *out); /* the intercept is the first parameter */
+    for (size_t c = 1; c < r.columns; c++)
+        for (size_t i = 0; i < d->n; i++)
+            out[i] += r.beta[c][i] * basis[(c - 1) * d->n + i];
+    for (size_t j = 0; j < SHAPES_MAX; j++)
+        mem_free(log_shape[j]);
+    mem_free(basis);
     return true;
 }

@@ -88,6 +88,13 @@ static size_t node_count(const struct proposal *q)
     return q->nodes[0] * q->nodes[1];
 }
 
+/* index of a node on dimension d; there is at least one node */
+static size_t node_index(const struct proposal *q, size_t node, size_t d)
+{
+    const size_t columns = q->nodes[1] > 0 ? q->nodes[1] : 1;
+    return d == 0 ? node / columns : node % columns;
+}
+
 /* points in lanes: the nodes, the last one repeated up to a multiple of 8 */
 static size_t padded(size_t n)
 {
@@ -106,9 +113,8 @@ static void place_nodes(struct proposal *q, const struct box *box, struct points
     pt->n = padded(count);
     for (size_t i = 0; i < pt->n; i++) {
         const size_t node = i < count ? i : count - 1;
-        const size_t index[] = {node / q->nodes[1], node % q->nodes[1]};
         for (size_t d = 0; d < SHAPES_MAX; d++)
-            pt->coord[d][i] = q->low[d] + q->step[d] * (double)index[d];
+            pt->coord[d][i] = q->low[d] + q->step[d] * (double)node_index(q, node, d);
     }
 }
 
@@ -282,7 +288,7 @@ static void kept_range(const struct proposal *q, const double *weight, double to
     *first = q->nodes[d] - 1;
     *last = 0;
     for (size_t i = 0; i < node_count(q); i++) {
-        const size_t index = d == 0 ? i / q->nodes[1] : i % q->nodes[1];
+        const size_t index = node_index(q, i, d);
         if (weight[i] < top - KEEP)
             continue;
         *first = index < *first ? index : *first;
@@ -347,7 +353,7 @@ static void fill_picking(struct proposal *q)
     const size_t count = node_count(q), columns = q->nodes[1] + 2;
     double sum = 0.0;
     for (size_t i = 0; i < count; i++) {
-        const size_t i1 = i / q->nodes[1], i2 = i % q->nodes[1];
+        const size_t i1 = node_index(q, i, 0), i2 = node_index(q, i, 1);
         double weight = q->cell[(i1 + 1) * columns + i2 + 1].weight;
         if ((q->at_zero[0] && i1 == 0) || (q->at_zero[1] && i2 == 0))
             weight *= 0.5; /* its tent is folded at 0 */

@@ -114,7 +114,7 @@ static void propose_shapes(struct sampler *s)
         u -= u >= 1.0 ? 1.0 : 0.0;
         const size_t node = pick_node(q, u);
         const size_t index[] = {node / q->nodes[1], node % q->nodes[1]};
-        for (size_t d = 0; d < q->dims; d++) {
+        for (size_t d = 0; d < q->dims && d < SHAPES_MAX; d++) {
             const double tent =
                 s->uniform[JITTER_A0 + 2 * d][i] + s->uniform[JITTER_B0 + 2 * d][i] - 1.0;
             double c = q->low[d] + q->step[d] * ((double)index[d] + tent);
@@ -306,14 +306,15 @@ void sampler_parameters(const struct problem *p, size_t n, const double *shape0,
                         const double *shape1, const double *sd, const double *beta,
                         const double *theta, const struct draw_rows *out, size_t at)
 {
-    const double *const shapes[] = {shape0, shape1};
     size_t row = 0, linear = 0, shape = 0;
     for (const struct parameter *a = p->curve->parameters; a->name; a++) {
         if (a->order > 1)
             continue;
-        const double *from = a->role == ROLE_SHAPE ? shapes[shape++]
-                             : p->chain            ? theta
-                                                   : beta + linear++ * n;
+        const double *from = p->chain ? theta : beta + linear * n;
+        if (a->role == ROLE_SHAPE)
+            from = shape++ == 0 ? shape0 : shape1;
+        else
+            linear++;
         memcpy(out->parameter + row++ * out->stride + at, from, n * sizeof *from);
     }
     if (!p->binary)

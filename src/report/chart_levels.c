@@ -47,7 +47,7 @@ double levels_gap(const struct chart_levels *l, const double *x)
 
 bool levels_fit_to_scale(const struct chart_levels *l, const struct frame *f)
 {
-    double x[LEVEL_PLACES];
+    double x[LEVEL_PLACES] = {0};
     levels_place(l, f, true, x);
     const double gap = levels_gap(l, x);
     const double mean = (x[l->n - 1] - x[0]) / (double)(l->n - 1);
