@@ -121,7 +121,7 @@ TEST_PROGRAMS := $(TEST_SOURCES:tests/unit/%.c=$(O)/tests/unit/%)
 BENCH_PROGRAMS := $(patsubst tests/bench/%.c,$(O)/tests/bench/%,$(wildcard tests/bench/*.c))
 FORMATTED := $(wildcard src/*/*.[ch] models/*.[ch] tests/*/*.[ch])
 
-.PHONY: all programs demo test bench install headers floors floors-update format format-fix \
+.PHONY: all programs demo test golden-redo bench install headers floors floors-update format format-fix \
     lengths lint clean FORCE
 .SECONDARY:
 .DELETE_ON_ERROR:
@@ -188,6 +188,10 @@ $(O)/tests/bench/%: $(O)/tests/bench/%.o $(O)/libterrace.a
 # Scripts find the program under test in TERRACE.
 test: all $(TEST_PROGRAMS)
 	@TERRACE="$(abspath $(BUILD)/terrace)" CC="$(CC)" TEST_PROGRAMS="$(TEST_PROGRAMS)" tests/run
+
+# After a change that is meant to change results: the commit says why.
+golden-redo: all
+	tests/golden/golden.sh --redo
 
 bench: $(BENCH_PROGRAMS)
 	@for b in $(BENCH_PROGRAMS); do $$b || exit 1; done

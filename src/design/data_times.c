@@ -151,7 +151,7 @@ static double latest_time(const struct data_reader *r)
 
 static void read_cut(struct data_reader *r, const struct clock *c, const char *cut)
 {
-    double value;
+    double value = NAN;
     r->data->cut = latest_time(r);
     if (cut && parse_time(cut, &value) != c->kind)
         data_fault(r, 0, DATA_MSG_CUT, cut, kind_words[c->kind]);

@@ -105,7 +105,7 @@ static bool push(struct checker *c, const char *name)
 {
     if (c->depth == DEPTH_MAX)
         return fault(c, "tags too deep");
-    strncpy(c->open[c->depth], name, NAME_MAX_CHARS - 1);
+    snprintf(c->open[c->depth], NAME_MAX_CHARS, "%s", name);
     c->depth++;
     if (strcmp(name, "style") != 0)
         return true;

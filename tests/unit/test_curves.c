@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* test_curves.c: one battery over every curve: lists, formula, levels that suit. */
 #include <math.h>
+#include <stdio.h>
 #include <string.h>
 
 #include "base/base.h"
@@ -102,8 +103,8 @@ static void check_parameters(const struct curve *c, const struct known *k)
     for (; c->parameters[i].name != NULL; i++) {
         const struct parameter *p = &c->parameters[i];
 
-        strncat(names, i > 0 ? " " : "", 1);
-        strncat(names, p->name, 20);
+        const size_t used = strlen(names);
+        snprintf(names + used, sizeof names - used, "%s%s", i > 0 ? " " : "", p->name);
         CU_ASSERT_EQUAL(p->role, k->roles[i] == 'L' ? ROLE_LINEAR : ROLE_SHAPE);
         CU_ASSERT_EQUAL(p->positive, k->positive[i] == 'y');
         CU_ASSERT(p->help != NULL && strlen(p->help) > 0);
