@@ -33,16 +33,16 @@ struct analyst {
 static const struct {
     const char *key, *sentence;
 } words[] = {
-    [RECOMMEND_CONTINUE] = {"continue",      "Continue the trial with the next shares."  },
-    [RECOMMEND_STOP_SUCCESS] = {"stop_success",  "Stop enrolment: the trial has succeeded."  },
+    [RECOMMEND_CONTINUE] = {"continue", "Continue the trial with the next shares."},
+    [RECOMMEND_STOP_SUCCESS] = {"stop_success", "Stop enrolment: the trial has succeeded."},
     [RECOMMEND_STOP_FUTILITY] = {"stop_futility",
-                            "Stop enrolment: success has become too improbable."         },
-    [RECOMMEND_SUCCESS] = {"success",       "The trial has succeeded."                  },
-    [RECOMMEND_NO_SUCCESS] = {"no_success",    "The trial has not succeeded."              },
+                                 "Stop enrolment: success has become too improbable."},
+    [RECOMMEND_SUCCESS] = {"success", "The trial has succeeded."},
+    [RECOMMEND_NO_SUCCESS] = {"no_success", "The trial has not succeeded."},
     [RECOMMEND_COMPLETE] = {"complete",
                             "The trial is complete; its design names no final criterion."},
     [RECOMMEND_UNDETERMINED] = {"undetermined",
-                            "The computation cannot be trusted: no recommendation."      },
+                                "The computation cannot be trusted: no recommendation."},
 };
 
 const char *recommendation_key(enum recommendation r)
@@ -234,10 +234,7 @@ static void no_parameters(struct analysis *out, const struct design *d)
 {
     for (size_t i = 0; i < out->parameters; i++)
         out->parameter[i] = (struct parameter_result){
-            d->model.parameter[i]->name, {NAN, NAN, NAN, NAN,   NAN},
-             {NAN,   NAN,    NAN,  NAN},
-             NAN
-        };
+            d->model.parameter[i]->name, {NAN, NAN, NAN, NAN, NAN}, {NAN, NAN, NAN, NAN}, NAN};
 }
 
 static void run_simulated(struct analysis *out, struct analyst *w, const struct analysis_request *r)

@@ -19,19 +19,18 @@
 enum { ANALYSES_MOST = 10000 };
 
 static const struct option own_options[] = {
-    {"analysis",   0, OPTION_WHOLE, false, "K",     1, ANALYSES_MOST,
-     "which planned analysis this is (default: the planned points the data reached)"                          },
-    {"final",      0, OPTION_FLAG,  false, NULL,    0, 0,             "the last analysis"                     },
-    {"cut",        0, OPTION_TEXT,  false, "TIME",  0, 0,
-     "data cut, a number or a date as in the data (default: the latest time in the data)"                     },
-    {"close",      0, OPTION_TEXT,  true,  "LABEL", 0, 0,
-     "this level is closed: it keeps its data and gets no more subjects"                                      },
-    {"pending-ok", 0, OPTION_FLAG,  false, NULL,    0, 0,
-     "with --final: analyse although outcomes are pending"                                                    },
-    {"draws",      0, OPTION_FLAG,  false, NULL,    0, 0,             "write the posterior draws to draws.csv"},
-    {"by",         0, OPTION_TEXT,  false, "NAME",  0, 0,             "who made this analysis, for the report"},
-    {NULL,         0, OPTION_FLAG,  false, NULL,    0, 0,             NULL                                    }
-};
+    {"analysis", 0, OPTION_WHOLE, false, "K", 1, ANALYSES_MOST,
+     "which planned analysis this is (default: the planned points the data reached)"},
+    {"final", 0, OPTION_FLAG, false, NULL, 0, 0, "the last analysis"},
+    {"cut", 0, OPTION_TEXT, false, "TIME", 0, 0,
+     "data cut, a number or a date as in the data (default: the latest time in the data)"},
+    {"close", 0, OPTION_TEXT, true, "LABEL", 0, 0,
+     "this level is closed: it keeps its data and gets no more subjects"},
+    {"pending-ok", 0, OPTION_FLAG, false, NULL, 0, 0,
+     "with --final: analyse although outcomes are pending"},
+    {"draws", 0, OPTION_FLAG, false, NULL, 0, 0, "write the posterior draws to draws.csv"},
+    {"by", 0, OPTION_TEXT, false, "NAME", 0, 0, "who made this analysis, for the report"},
+    {NULL, 0, OPTION_FLAG, false, NULL, 0, 0, NULL}};
 
 static const char *const example[] = {
     "terrace analyze data_examples/itch/design.json data_examples/itch/interim.csv", "",

@@ -15,8 +15,7 @@
 static const struct option own_options[] = {
     {"schema", 0, OPTION_FLAG, false, NULL, 0, 0,
      "print the JSON Schema of design files (no DESIGN then)"},
-    {NULL,     0, OPTION_FLAG, false, NULL, 0, 0, NULL       }
-};
+    {NULL, 0, OPTION_FLAG, false, NULL, 0, 0, NULL}};
 
 static const char *const example[] = {
     "terrace check data_examples/itch/design.json", "",

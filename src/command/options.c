@@ -11,20 +11,19 @@
 enum { THREADS_MOST = 1024, NAMES_MOST = 40, HELP_COLUMN = 22 };
 
 const struct option common_options[] = {
-    {"out",      'o', OPTION_TEXT,  false, "DIR", 0, 0,                  "directory for the result files"               },
-    {"seed",     0,   OPTION_WHOLE, false, "N",   0, 9007199254740991.0,
-     "seed of the random numbers, 0 to 2^53 - 1 (wins over the design's)"                                               },
-    {"threads",  0,   OPTION_WHOLE, false, "T",   1, THREADS_MOST,
-     "threads (default: the processors this process may use); never changes a result"                                   },
-    {"force",    0,   OPTION_FLAG,  false, NULL,  0, 0,                  "replace this command's files in the directory"},
-    {"quiet",    0,   OPTION_FLAG,  false, NULL,  0, 0,                  "no tables and no notes, only faults"          },
-    {"json",     0,   OPTION_FLAG,  false, NULL,  0, 0,
-     "standard output is exactly the bytes of the command's JSON"                                                       },
-    {"progress", 0,   OPTION_FLAG,  false, NULL,  0, 0,
-     "tell progress on standard error, also when it is no terminal"                                                     },
-    {"help",     0,   OPTION_FLAG,  false, NULL,  0, 0,                  "this text"                                    },
-    {NULL,       0,   OPTION_FLAG,  false, NULL,  0, 0,                  NULL                                           }
-};
+    {"out", 'o', OPTION_TEXT, false, "DIR", 0, 0, "directory for the result files"},
+    {"seed", 0, OPTION_WHOLE, false, "N", 0, 9007199254740991.0,
+     "seed of the random numbers, 0 to 2^53 - 1 (wins over the design's)"},
+    {"threads", 0, OPTION_WHOLE, false, "T", 1, THREADS_MOST,
+     "threads (default: the processors this process may use); never changes a result"},
+    {"force", 0, OPTION_FLAG, false, NULL, 0, 0, "replace this command's files in the directory"},
+    {"quiet", 0, OPTION_FLAG, false, NULL, 0, 0, "no tables and no notes, only faults"},
+    {"json", 0, OPTION_FLAG, false, NULL, 0, 0,
+     "standard output is exactly the bytes of the command's JSON"},
+    {"progress", 0, OPTION_FLAG, false, NULL, 0, 0,
+     "tell progress on standard error, also when it is no terminal"},
+    {"help", 0, OPTION_FLAG, false, NULL, 0, 0, "this text"},
+    {NULL, 0, OPTION_FLAG, false, NULL, 0, 0, NULL}};
 
 void options_release(struct options *o)
 {

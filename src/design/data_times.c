@@ -17,12 +17,7 @@ static double unit_days(const char *unit)
     static const struct {
         const char *word;
         double days;
-    } units[] = {
-        {"day",   1      },
-        {"week",  7      },
-        {"month", 30.4375},
-        {"year",  365.25 }
-    };
+    } units[] = {{"day", 1}, {"week", 7}, {"month", 30.4375}, {"year", 365.25}};
     for (size_t i = 0; i < sizeof units / sizeof *units; i++)
         if (strcmp(unit, units[i].word) == 0)
             return units[i].days;

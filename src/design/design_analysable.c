@@ -109,13 +109,13 @@ static const struct {
     const char *name;
     void (*check)(const struct request *q);
 } not_yet[] = {
-    {"curves",                         check_curve      },
-    {"walks of order 2",               check_order      },
-    {"control off the curve",          check_control    },
-    {"families",                       check_families   },
-    {"truncation",                     check_cuts       },
-    {"non-normal linear coefficients", check_linear     },
-    {"sensitivity models",             check_sensitivity},
+    {"curves", check_curve},
+    {"walks of order 2", check_order},
+    {"control off the curve", check_control},
+    {"families", check_families},
+    {"truncation", check_cuts},
+    {"non-normal linear coefficients", check_linear},
+    {"sensitivity models", check_sensitivity},
 };
 
 enum status design_check_analysable(const struct design *d, struct err *e)

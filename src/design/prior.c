@@ -31,9 +31,7 @@ bool prior_is_computable(const struct prior *p)
 static struct prior prior_make(const struct prior_family *family, double first, double second)
 {
     return (struct prior){
-        .family = family, .arg = {first, second},
-             .above = -INFINITY, .below = INFINITY
-    };
+        .family = family, .arg = {first, second}, .above = -INFINITY, .below = INFINITY};
 }
 
 struct prior prior_normal(double mean, double sd)

@@ -10,17 +10,10 @@ static const struct {
     unsigned bit;
     const char *key;
 } keys[] = {
-    {ARG_FRACTION, "fraction"},
-    {ARG_EFFECT,   "effect"  },
-    {ARG_OF,       "of"      },
-    {ARG_MARGIN,   "margin"  },
-    {ARG_TARGET,   "target"  },
-    {ARG_LEVEL,    "level"   },
-    {ARG_GAIN,     "gain"    },
-    {ARG_VALUE,    "value"   },
-    {ARG_PER_ARM,  "per_arm" },
-    {ARG_ALPHA,    "alpha"   },
-    {ARG_SCALE,    "scale"   },
+    {ARG_FRACTION, "fraction"}, {ARG_EFFECT, "effect"}, {ARG_OF, "of"},
+    {ARG_MARGIN, "margin"},     {ARG_TARGET, "target"}, {ARG_LEVEL, "level"},
+    {ARG_GAIN, "gain"},         {ARG_VALUE, "value"},   {ARG_PER_ARM, "per_arm"},
+    {ARG_ALPHA, "alpha"},       {ARG_SCALE, "scale"},
 };
 
 static void add_keys(struct text *out, unsigned allowed)

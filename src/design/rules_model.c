@@ -53,11 +53,7 @@ void curve_parameter_names(const struct curve *c, int order, struct text *out)
 /* Keys that mean something for one curve only. */
 static const struct {
     const char *key, *curve;
-} curve_keys[] = {
-    {"shift",   "log_linear"},
-    {"order",   "ndlm"      },
-    {"spacing", "ndlm"      }
-};
+} curve_keys[] = {{"shift", "log_linear"}, {"order", "ndlm"}, {"spacing", "ndlm"}};
 
 static void add_parameters(struct model *m, const struct design *d)
 {

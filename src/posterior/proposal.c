@@ -61,9 +61,7 @@ void proposal_work_free(struct proposal_work *w)
 
 void proposal_init(struct proposal *q, const struct problem *p)
 {
-    *q = (struct proposal){
-        .dims = p->dims, .nodes = {1, 1}
-    };
+    *q = (struct proposal){.dims = p->dims, .nodes = {1, 1}};
     if (p->dims == 1)
         q->nodes[0] = NODES_ONE;
     if (p->dims == 2) {

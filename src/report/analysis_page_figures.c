@@ -186,10 +186,10 @@ static void target_chart(struct text *out, struct sheet *s, size_t t)
         .title = "Probability",
         .label = "Chart of the probability that each level is the target, and that it meets it. "
                  "The numbers are in the table that follows.",
-        .bar_name = {"is the target",       NULL                                           },
-        .bar = {s->column[0],          NULL                                           },
+        .bar_name = {"is the target", NULL},
+        .bar = {s->column[0], NULL},
         .mark_name = {"meets the condition", prior ? "is the target, before any data" : NULL},
-        .mark = {s->column[1],          s->column[2]                                   },
+        .mark = {s->column[1], s->column[2]},
     };
     target_columns(s, t);
     chart_bars(out, &c);
@@ -245,7 +245,7 @@ static void allocation_figure(struct text *out, struct sheet *s)
                  "follows.",
         .percent = true,
         .bar_name = {"randomized so far", next ? "next share" : NULL},
-        .bar = {s->column[0],        s->column[1]              },
+        .bar = {s->column[0], s->column[1]},
     };
     figure_open(out, s, "Allocation, current and next", false, s->n);
     chart_bars(out, &c);

@@ -172,11 +172,7 @@ static void remind_scenarios(struct check_notes *n, const struct design *d)
 void check_notes_init(struct check_notes *out, const struct design *d, const struct expected *x,
                       const struct prior_bands *bands)
 {
-    *out = (struct check_notes){
-        {0, NULL},
-        {0, NULL},
-        {0, NULL}
-    };
+    *out = (struct check_notes){{0, NULL}, {0, NULL}, {0, NULL}};
     warn_parameters(out, d);
     note_targets(out, d);
     warn_decisions(out, d);

@@ -93,9 +93,9 @@ void svg_area(struct text *out, const char *css_class, size_t n, const double *x
 
 /* Corners in units of the radius; areas are about equal. */
 static const double corners[][4][2] = {
-    [MARK_DIAMOND] = {{0, -1.25},   {1.25, 0},   {0, 1.25},  {-1.25, 0}  },
-    [MARK_SQUARE] = {{-0.9, -0.9}, {0.9, -0.9}, {0.9, 0.9}, {-0.9, 0.9} },
-    [MARK_TRIANGLE] = {{-1.2, -0.9}, {1.2, -0.9}, {0, 1.2},   {-1.2, -0.9}},
+    [MARK_DIAMOND] = {{0, -1.25}, {1.25, 0}, {0, 1.25}, {-1.25, 0}},
+    [MARK_SQUARE] = {{-0.9, -0.9}, {0.9, -0.9}, {0.9, 0.9}, {-0.9, 0.9}},
+    [MARK_TRIANGLE] = {{-1.2, -0.9}, {1.2, -0.9}, {0, 1.2}, {-1.2, -0.9}},
 };
 
 void svg_mark(struct text *out, const char *css_class, enum svg_mark mark, double x, double y,

@@ -21,14 +21,9 @@ struct bench_case {
 };
 
 static const struct bench_case cases[] = {
-    {"ndlm",         false, 9, 105},
-    {"sigmoid_emax", false, 7, 100},
-    {"emax",         true,  7, 140},
-    {"ndlm",         true,  9, 180},
-    {"emax",         false, 7, 0  },
-    {"sigmoid_emax", true,  7, 0  },
-    {"independent",  false, 9, 0  },
-    {"independent",  true,  9, 0  },
+    {"ndlm", false, 9, 105},      {"sigmoid_emax", false, 7, 100}, {"emax", true, 7, 140},
+    {"ndlm", true, 9, 180},       {"emax", false, 7, 0},           {"sigmoid_emax", true, 7, 0},
+    {"independent", false, 9, 0}, {"independent", true, 9, 0},
 };
 
 static const char *const data_names[] = {"informative", "flat", "sparse"};

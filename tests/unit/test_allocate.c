@@ -309,18 +309,17 @@ static void bounds_that_do_not_bind_change_nothing(void)
 }
 
 static const struct unit_test tests[] = {
-    {"step 1 and the control's share by hand", first_step_by_hand                    },
-    {"information by hand",                    information_by_hand                   },
-    {"power n/2N",                             power_n_over_2n                       },
-    {"all weights zero",                       all_zero_weights_share_equally        },
-    {"dropping",                               dropping                              },
-    {"bounds after dropping",                  bounds_after_dropping                 },
-    {"what is missing is shared",              what_is_missing_is_shared             },
-    {"closed levels get nothing",              closed_levels_get_nothing             },
-    {"bounds against bisection",               bounds_against_bisection              },
-    {"bounds that do not bind",                bounds_that_do_not_bind_change_nothing},
-    UNIT_END
-};
+    {"step 1 and the control's share by hand", first_step_by_hand},
+    {"information by hand", information_by_hand},
+    {"power n/2N", power_n_over_2n},
+    {"all weights zero", all_zero_weights_share_equally},
+    {"dropping", dropping},
+    {"bounds after dropping", bounds_after_dropping},
+    {"what is missing is shared", what_is_missing_is_shared},
+    {"closed levels get nothing", closed_levels_get_nothing},
+    {"bounds against bisection", bounds_against_bisection},
+    {"bounds that do not bind", bounds_that_do_not_bind_change_nothing},
+    UNIT_END};
 
 int main(void)
 {

@@ -335,17 +335,16 @@ static void the_last_analysis(void)
 }
 
 static const struct unit_test tests[] = {
-    {"normal levels in closed form",               normal_levels_in_closed_form        },
-    {"binary levels by quadrature",                binary_levels_by_quadrature         },
-    {"probabilities and shares sum to 1",          probabilities_and_shares_sum_to_1   },
-    {"the same bytes again, whatever the threads", the_same_bytes_again                },
-    {"simulated fits agree with live ones",        simulated_agrees_with_live          },
-    {"identical replicates are refused",           identical_replicates_are_refused    },
-    {"no data: warnings, not errors",              sparse_data_give_warnings_not_errors},
-    {"the prior",                                  the_prior                           },
-    {"the last analysis",                          the_last_analysis                   },
-    UNIT_END
-};
+    {"normal levels in closed form", normal_levels_in_closed_form},
+    {"binary levels by quadrature", binary_levels_by_quadrature},
+    {"probabilities and shares sum to 1", probabilities_and_shares_sum_to_1},
+    {"the same bytes again, whatever the threads", the_same_bytes_again},
+    {"simulated fits agree with live ones", simulated_agrees_with_live},
+    {"identical replicates are refused", identical_replicates_are_refused},
+    {"no data: warnings, not errors", sparse_data_give_warnings_not_errors},
+    {"the prior", the_prior},
+    {"the last analysis", the_last_analysis},
+    UNIT_END};
 
 int main(void)
 {

@@ -24,30 +24,30 @@ static const struct expected_prior {
     bool scaled;
     int order;
 } expected[] = {
-    {"linear",       "E0",       "normal",      {0.5, 5},           true,  1},
-    {"linear",       "slope",    "normal",      {0, 0.0625},        true,  1},
-    {"log_linear",   "E0",       "normal",      {0.5, 5},           true,  1},
-    {"log_linear",   "slope",    "normal",      {0, 1.13779903},    true,  1}, /* 5 / ln 81 */
-    {"quadratic",    "E0",       "normal",      {0.5, 5},           true,  1},
-    {"quadratic",    "b1",       "normal",      {0, 5},             true,  1},
-    {"quadratic",    "b2",       "normal",      {0, 5},             true,  1},
-    {"emax",         "E0",       "normal",      {0.5, 5},           true,  1},
-    {"emax",         "Emax",     "normal",      {0, 5},             true,  1},
-    {"emax",         "ED50",     "lognormal",   {2.99573227, 1},    false, 1},
-    {"sigmoid_emax", "E0",       "normal",      {0.5, 5},           true,  1},
-    {"sigmoid_emax", "Emax",     "normal",      {0, 5},             true,  1},
-    {"sigmoid_emax", "ED50",     "lognormal",   {2.99573227, 1},    false, 1},
-    {"sigmoid_emax", "h",        "lognormal",   {0, 0.5},           false, 1},
-    {"logistic",     "E0",       "normal",      {0.5, 5},           true,  1},
-    {"logistic",     "Emax",     "normal",      {0, 5},             true,  1},
-    {"logistic",     "ED50",     "normal",      {40, 40},           false, 1},
-    {"logistic",     "spread",   "lognormal",   {2.07944154, 0.75}, false, 1}, /* ln 8 */
-    {"ndlm",         "theta",    "normal",      {0.5, 5},           true,  1},
-    {"ndlm",         "drift_sd", "half_normal", {2.23606798},       true,  1}, /* 5 / sqrt 5 */
-    {"ndlm",         "theta",    "normal",      {0.5, 5},           true,  2},
-    {"ndlm",         "slope",    "normal",      {0, 1},             true,  2},
-    {"ndlm",         "drift_sd", "half_normal", {0.44721360},       true,  2}, /* 5 / 5^1.5 */
-    {"independent",  "theta",    "normal",      {0.5, 5},           true,  1},
+    {"linear", "E0", "normal", {0.5, 5}, true, 1},
+    {"linear", "slope", "normal", {0, 0.0625}, true, 1},
+    {"log_linear", "E0", "normal", {0.5, 5}, true, 1},
+    {"log_linear", "slope", "normal", {0, 1.13779903}, true, 1}, /* 5 / ln 81 */
+    {"quadratic", "E0", "normal", {0.5, 5}, true, 1},
+    {"quadratic", "b1", "normal", {0, 5}, true, 1},
+    {"quadratic", "b2", "normal", {0, 5}, true, 1},
+    {"emax", "E0", "normal", {0.5, 5}, true, 1},
+    {"emax", "Emax", "normal", {0, 5}, true, 1},
+    {"emax", "ED50", "lognormal", {2.99573227, 1}, false, 1},
+    {"sigmoid_emax", "E0", "normal", {0.5, 5}, true, 1},
+    {"sigmoid_emax", "Emax", "normal", {0, 5}, true, 1},
+    {"sigmoid_emax", "ED50", "lognormal", {2.99573227, 1}, false, 1},
+    {"sigmoid_emax", "h", "lognormal", {0, 0.5}, false, 1},
+    {"logistic", "E0", "normal", {0.5, 5}, true, 1},
+    {"logistic", "Emax", "normal", {0, 5}, true, 1},
+    {"logistic", "ED50", "normal", {40, 40}, false, 1},
+    {"logistic", "spread", "lognormal", {2.07944154, 0.75}, false, 1}, /* ln 8 */
+    {"ndlm", "theta", "normal", {0.5, 5}, true, 1},
+    {"ndlm", "drift_sd", "half_normal", {2.23606798}, true, 1}, /* 5 / sqrt 5 */
+    {"ndlm", "theta", "normal", {0.5, 5}, true, 2},
+    {"ndlm", "slope", "normal", {0, 1}, true, 2},
+    {"ndlm", "drift_sd", "half_normal", {0.44721360}, true, 2}, /* 5 / 5^1.5 */
+    {"independent", "theta", "normal", {0.5, 5}, true, 1},
 };
 
 static size_t parameter_index(const struct curve *c, const char *name)
@@ -92,44 +92,17 @@ static void default_priors_elsewhere(void)
     static const double days[] = {3, 5, 7, 12}, below[] = {-10, 0, 30};
     struct curve_levels at = levels_of(days, 4);
 
-    check_prior(
-        &(struct expected_prior){
-            "emax", "ED50", "lognormal", {log(6), 1},
-               false, 1
-    },
-        &at);
-    check_prior(
-        &(struct expected_prior){
-            "linear", "slope", "normal", {0, 5.0 / 9},
-               true, 1
-    },
-        &at);
-    check_prior(
-        &(struct expected_prior){
-            "logistic", "ED50", "normal", {7.5, 4.5},
-               false, 1
-    },
-        &at);
+    check_prior(&(struct expected_prior){"emax", "ED50", "lognormal", {log(6), 1}, false, 1}, &at);
+    check_prior(&(struct expected_prior){"linear", "slope", "normal", {0, 5.0 / 9}, true, 1}, &at);
+    check_prior(&(struct expected_prior){"logistic", "ED50", "normal", {7.5, 4.5}, false, 1}, &at);
     at.shift = 2;
     check_prior(
-        &(struct expected_prior){
-            "log_linear", "slope", "normal", {0, 5 / log(14.0 / 5)},
-               true, 1
-    },
+        &(struct expected_prior){"log_linear", "slope", "normal", {0, 5 / log(14.0 / 5)}, true, 1},
         &at);
     at = levels_of(below, 3);
+    check_prior(&(struct expected_prior){"logistic", "ED50", "normal", {10, 20}, false, 1}, &at);
     check_prior(
-        &(struct expected_prior){
-            "logistic", "ED50", "normal", {10, 20},
-               false, 1
-    },
-        &at);
-    check_prior(
-        &(struct expected_prior){
-            "logistic", "spread", "lognormal", {log(4), 0.75},
-               false, 1
-    },
-        &at);
+        &(struct expected_prior){"logistic", "spread", "lognormal", {log(4), 0.75}, false, 1}, &at);
 }
 
 /* A default prior of a positive number has no mass below 0. */
@@ -153,8 +126,8 @@ static void positive_numbers_have_positive_priors(void)
 }
 
 static const struct unit_test tests[] = {
-    {"a worked case",                         default_priors_of_a_worked_case      },
-    {"levels that start elsewhere",           default_priors_elsewhere             },
+    {"a worked case", default_priors_of_a_worked_case},
+    {"levels that start elsewhere", default_priors_elsewhere},
     {"positive numbers have positive priors", positive_numbers_have_positive_priors},
     UNIT_END,
 };

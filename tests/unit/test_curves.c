@@ -64,14 +64,14 @@ static const struct known {
     double (*at)(double d, const double *v, double largest); /* NULL: no formula */
     double value[CURVE_PARAMETERS_MAX];
 } known[] = {
-    {"linear",       "LL",   "nn",   "E0 slope",             true,  linear_at,     {-1, 0.03}      },
-    {"log_linear",   "LL",   "nn",   "E0 slope",             true,  log_linear_at, {2, -0.4}       },
-    {"quadratic",    "LLL",  "nnn",  "E0 b1 b2",             false, quadratic_at,  {1, 4, -3}      },
-    {"emax",         "LLS",  "nny",  "E0 Emax ED50",         true,  emax_at,       {-1, -2.4, 8}   },
-    {"sigmoid_emax", "LLSS", "nnyy", "E0 Emax ED50 h",       true,  sigmoid_at,    {-1, 3, 12, 2.5}},
-    {"logistic",     "LLSS", "nnny", "E0 Emax ED50 spread",  true,  logistic_at,   {0.5, 2, -15, 9}},
-    {"ndlm",         "LLS",  "nny",  "theta slope drift_sd", false, NULL,          {0}             },
-    {"independent",  "L",    "n",    "theta",                false, NULL,          {0}             },
+    {"linear", "LL", "nn", "E0 slope", true, linear_at, {-1, 0.03}},
+    {"log_linear", "LL", "nn", "E0 slope", true, log_linear_at, {2, -0.4}},
+    {"quadratic", "LLL", "nnn", "E0 b1 b2", false, quadratic_at, {1, 4, -3}},
+    {"emax", "LLS", "nny", "E0 Emax ED50", true, emax_at, {-1, -2.4, 8}},
+    {"sigmoid_emax", "LLSS", "nnyy", "E0 Emax ED50 h", true, sigmoid_at, {-1, 3, 12, 2.5}},
+    {"logistic", "LLSS", "nnny", "E0 Emax ED50 spread", true, logistic_at, {0.5, 2, -15, 9}},
+    {"ndlm", "LLS", "nny", "theta slope drift_sd", false, NULL, {0}},
+    {"independent", "L", "n", "theta", false, NULL, {0}},
 };
 
 static void the_list(void)
@@ -150,11 +150,7 @@ static void means_at_negative_levels(void)
     static const struct {
         size_t known;
         double shift;
-    } c[] = {
-        {0, 1},
-        {2, 1},
-        {5, 1}
-    };
+    } c[] = {{0, 1}, {2, 1}, {5, 1}};
     double theta[3];
 
     for (size_t i = 0; i < COUNT_OF(c); i++) {
@@ -261,12 +257,7 @@ static void extremes_stay_in_bounds(void)
 {
     static const char *const saturating[] = {"emax", "sigmoid_emax"};
     static const double extreme[][2] = {
-        {1e-250, 1e-6},
-        {1e-250, 300 },
-        {1e250,  1e-6},
-        {1e250,  300 },
-        {20,     1e9 }
-    };
+        {1e-250, 1e-6}, {1e-250, 300}, {1e250, 1e-6}, {1e250, 300}, {20, 1e9}};
     const struct curve_levels at = levels_of(itch, LEVELS);
     double theta[LEVELS];
 
@@ -285,25 +276,13 @@ static void extremes_stay_in_bounds(void)
 
 static void levels_that_suit(void)
 {
-    static const double values[][2] = {
-        {0,  5 },
-        {2,  5 },
-        {-3, 5 },
-        {-3, 0 },
-        {-3, -1},
-        {-1, 4 }
-    };
+    static const double values[][2] = {{0, 5}, {2, 5}, {-3, 5}, {-3, 0}, {-3, -1}, {-1, 4}};
     static const struct {
         const char *curve, *suits; /* y or n for each pair of values */
     } want[] = {
-        {"linear",       "yyyyyy"},
-        {"log_linear",   "yynnnn"}, /* shift 1 */
-        {"quadratic",    "yyynny"},
-        {"emax",         "yynnnn"},
-        {"sigmoid_emax", "yynnnn"},
-        {"logistic",     "yyyyyy"},
-        {"ndlm",         "yyyyyy"},
-        {"independent",  "yyyyyy"},
+        {"linear", "yyyyyy"},    {"log_linear", "yynnnn"}, /* shift 1 */
+        {"quadratic", "yyynny"}, {"emax", "yynnnn"},       {"sigmoid_emax", "yynnnn"},
+        {"logistic", "yyyyyy"},  {"ndlm", "yyyyyy"},       {"independent", "yyyyyy"},
     };
 
     for (size_t i = 0; i < COUNT_OF(want); i++)
@@ -339,16 +318,16 @@ static void shift_decides_for_log_linear(void)
 }
 
 static const struct unit_test tests[] = {
-    {"the list",                          the_list                            },
-    {"parameters of the interface",       parameters_of_the_interface         },
-    {"means follow the formula",          means_follow_the_formula            },
-    {"means at negative levels",          means_at_negative_levels            },
-    {"the basis follows the formula",     basis_follows_the_formula           },
-    {"blocks of points do not show",      blocks_do_not_show                  },
-    {"extremes stay in bounds",           extremes_stay_in_bounds             },
-    {"levels that suit",                  levels_that_suit                    },
+    {"the list", the_list},
+    {"parameters of the interface", parameters_of_the_interface},
+    {"means follow the formula", means_follow_the_formula},
+    {"means at negative levels", means_at_negative_levels},
+    {"the basis follows the formula", basis_follows_the_formula},
+    {"blocks of points do not show", blocks_do_not_show},
+    {"extremes stay in bounds", extremes_stay_in_bounds},
+    {"levels that suit", levels_that_suit},
     {"0 alone suits no saturating curve", zero_alone_suits_no_saturating_curve},
-    {"the shift decides for log_linear",  shift_decides_for_log_linear        },
+    {"the shift decides for log_linear", shift_decides_for_log_linear},
     UNIT_END,
 };
 

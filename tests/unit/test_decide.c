@@ -44,11 +44,9 @@ static void start(struct world *x, size_t decisions)
     tiny_init(&x->w, 3, 0);
     for (size_t i = 0; i < decisions; i++) {
         x->condition[i][0] = above(0.1, 0.5);
-        x->decision[i] = (struct decision){
-            .action = ACTION_STOP_FUTILITY,
-            .when = {JOIN_ONE, 1, x->condition[i]},
-            .binding = true
-        };
+        x->decision[i] = (struct decision){.action = ACTION_STOP_FUTILITY,
+                                           .when = {JOIN_ONE, 1, x->condition[i]},
+                                           .binding = true};
     }
     x->w.d.decisions = decisions;
     x->w.d.decision = x->decision;
@@ -203,15 +201,14 @@ static void the_interface_s_words(void)
 }
 
 static const struct unit_test tests[] = {
-    {"the first that is met acts",         first_met_acts                },
-    {"from and min_observed",              from_and_min_observed         },
-    {"all and any",                        joins                         },
-    {"thresholds are strict",              thresholds_are_strict         },
-    {"closeness and precision",            closeness_and_precision       },
+    {"the first that is met acts", first_met_acts},
+    {"from and min_observed", from_and_min_observed},
+    {"all and any", joins},
+    {"thresholds are strict", thresholds_are_strict},
+    {"closeness and precision", closeness_and_precision},
     {"the last analysis reads final only", last_analysis_reads_final_only},
-    {"the interface's words",              the_interface_s_words         },
-    UNIT_END
-};
+    {"the interface's words", the_interface_s_words},
+    UNIT_END};
 
 int main(void)
 {

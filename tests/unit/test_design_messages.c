@@ -99,9 +99,8 @@ static void all_faults_in_one_run(void)
 
 static const struct unit_test tests[] = {
     {"each message is earned by one malformed design", one_design_one_message},
-    {"all faults of a design in one run, and no more", all_faults_in_one_run },
-    UNIT_END
-};
+    {"all faults of a design in one run, and no more", all_faults_in_one_run},
+    UNIT_END};
 
 int main(void)
 {

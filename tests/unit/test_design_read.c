@@ -312,19 +312,18 @@ static void analysable(void)
 }
 
 static const struct unit_test tests[] = {
-    {"continuous design of the interface",                       itch            },
-    {"binary design by duration",                                antibiotic      },
-    {"control off the curve",                                    off_curve       },
-    {"performance goal",                                         performance_goal},
-    {"default priors",                                           default_priors  },
-    {"other defaults",                                           other_defaults  },
-    {"priors as given",                                          priors_as_given },
-    {"planned points that are held",                             planned_points  },
-    {"the resolved form reads back as itself",                   resolved_form   },
-    {"the resolved hash ignores notes and defaults written out", resolved_hash   },
-    {"what this version analyzes",                               analysable      },
-    UNIT_END
-};
+    {"continuous design of the interface", itch},
+    {"binary design by duration", antibiotic},
+    {"control off the curve", off_curve},
+    {"performance goal", performance_goal},
+    {"default priors", default_priors},
+    {"other defaults", other_defaults},
+    {"priors as given", priors_as_given},
+    {"planned points that are held", planned_points},
+    {"the resolved form reads back as itself", resolved_form},
+    {"the resolved hash ignores notes and defaults written out", resolved_hash},
+    {"what this version analyzes", analysable},
+    UNIT_END};
 
 int main(void)
 {

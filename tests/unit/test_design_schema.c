@@ -351,12 +351,11 @@ static void comment_names_rules(void)
 }
 
 static const struct unit_test tests[] = {
-    {"good and malformed designs are judged alike", whole_files        },
-    {"every row of the table is judged alike",      every_row          },
-    {"defaults are allowed values",                 fallbacks          },
-    {"the comment names the rules of the parser",   comment_names_rules},
-    UNIT_END
-};
+    {"good and malformed designs are judged alike", whole_files},
+    {"every row of the table is judged alike", every_row},
+    {"defaults are allowed values", fallbacks},
+    {"the comment names the rules of the parser", comment_names_rules},
+    UNIT_END};
 
 int main(void)
 {

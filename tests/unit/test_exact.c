@@ -29,17 +29,9 @@ struct observed {
 };
 
 static const struct observed informative = {
-    {12,  12,  12,  12,  12 },
-    {0.1, 1.4, 2.2, 2.3, 2.6},
-    {30,  41,  38,  29,  35 },
-    {2,   5,   6,   7,   8  }
-};
+    {12, 12, 12, 12, 12}, {0.1, 1.4, 2.2, 2.3, 2.6}, {30, 41, 38, 29, 35}, {2, 5, 6, 7, 8}};
 static const struct observed flat = {
-    {9,   9,    0, 9,   9  },
-    {0.2, -0.1, 0, 0.1, 0.0},
-    {20,  25,   0, 22,  18 },
-    {3,   3,    0, 4,   3  }
-};
+    {9, 9, 0, 9, 9}, {0.2, -0.1, 0, 0.1, 0.0}, {20, 25, 0, 22, 18}, {3, 3, 0, 4, 3}};
 
 static struct level_data as_level_data(const struct observed *o, struct observed *copy)
 {
@@ -319,12 +311,12 @@ static void binary_flat(void)
 }
 
 static const struct unit_test tests[] = {
-    {"emax, continuous, informative",              emax_informative  },
-    {"emax, continuous, flat with an empty level", emax_flat         },
-    {"ndlm, continuous, informative",              walk_informative  },
-    {"ndlm, continuous, flat with an empty level", walk_flat         },
-    {"emax, binary, informative",                  binary_informative},
-    {"emax, binary, flat with an empty level",     binary_flat       },
+    {"emax, continuous, informative", emax_informative},
+    {"emax, continuous, flat with an empty level", emax_flat},
+    {"ndlm, continuous, informative", walk_informative},
+    {"ndlm, continuous, flat with an empty level", walk_flat},
+    {"emax, binary, informative", binary_informative},
+    {"emax, binary, flat with an empty level", binary_flat},
     UNIT_END,
 };
 

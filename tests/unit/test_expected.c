@@ -16,11 +16,7 @@ struct small {
 
 static void small_init(struct small *s)
 {
-    static const struct small start = {
-        .dropout = {0.1,  0.1},
-          .ratio = {  1,   1   },
-          .at = { 60, 90,    120}
-    };
+    static const struct small start = {.dropout = {0.1, 0.1}, .ratio = {1, 1}, .at = {60, 90, 120}};
     *s = start;
     s->rates[0] = (struct rate_step){0, 3};
     s->rates[1] = (struct rate_step){8, 6};
@@ -218,20 +214,19 @@ static void gains_are_signed(void)
 }
 
 static const struct unit_test tests[] = {
-    {"arrivals and their times",           arrivals_and_their_times          },
-    {"check value",                        check_value                       },
-    {"counted by randomized",              counted_by_randomized             },
-    {"counted by observed",                counted_by_observed               },
-    {"failure counts dropouts",            failure_counts_dropouts           },
-    {"observed at once",                   observed_at_once                  },
-    {"not held after enrolment",           not_held_after_enrolment          },
-    {"cuts wait for the lag",              cuts_wait_for_the_lag             },
-    {"adapted shares wait for the start",  adapted_shares_wait_for_the_start },
-    {"dropout is weighted by the ratio",   dropout_is_weighted_by_the_ratio  },
+    {"arrivals and their times", arrivals_and_their_times},
+    {"check value", check_value},
+    {"counted by randomized", counted_by_randomized},
+    {"counted by observed", counted_by_observed},
+    {"failure counts dropouts", failure_counts_dropouts},
+    {"observed at once", observed_at_once},
+    {"not held after enrolment", not_held_after_enrolment},
+    {"cuts wait for the lag", cuts_wait_for_the_lag},
+    {"adapted shares wait for the start", adapted_shares_wait_for_the_start},
+    {"dropout is weighted by the ratio", dropout_is_weighted_by_the_ratio},
     {"without rates only what is planned", without_rates_only_what_is_planned},
-    {"gains are signed",                   gains_are_signed                  },
-    UNIT_END
-};
+    {"gains are signed", gains_are_signed},
+    UNIT_END};
 
 int main(void)
 {

@@ -29,19 +29,14 @@ struct world {
 /* Pr(gain of C > 0) is 0.760 where the means are 0, 0, 1. */
 static void start(struct world *x)
 {
-    script = (struct script){
-        .mean = {0, 0, 1},
-          .converges_at = 0, .slice_converges_at = 0
-    };
+    script = (struct script){.mean = {0, 0, 1}, .converges_at = 0, .slice_converges_at = 0};
     tiny_init(&x->w, LEVELS, 0);
     tiny_target(&x->w, &rule_optimal, 0, OF_BEST);
     x->w.d.model.curve = &curve;
     x->condition = (struct condition){
         .measure = &measure_pr_gain, .target = -1, .level = 2, .above = true, .threshold = 0.5};
     x->decision = (struct decision){
-        .action = ACTION_STOP_SUCCESS, .when = {JOIN_ONE, 1, &x->condition},
-             .binding = true
-    };
+        .action = ACTION_STOP_SUCCESS, .when = {JOIN_ONE, 1, &x->condition}, .binding = true};
     x->w.d.decision = &x->decision;
     x->w.d.decisions = 1;
     x->w.d.precision = 0.02;
@@ -345,23 +340,22 @@ static void priors(void)
 }
 
 static const struct unit_test tests[] = {
-    {"stops when everything is settled",           stops_when_settled                    },
-    {"waits for convergence",                      waits_for_convergence                 },
-    {"precision not reached",                      precision_not_reached                 },
-    {"closeness lengthens the run",                closeness_lengthens_the_run           },
-    {"doubt leads to slice sampling",              doubt_leads_to_slices                 },
-    {"missed convergence leads to slice sampling", missed_convergence_leads_to_slices    },
-    {"missed again: distrusted",                   missed_again_is_distrusted            },
-    {"disagreement is tried again by slices",      disagreement_is_tried_again_by_slices },
-    {"lasting disagreement: distrusted",           lasting_disagreement_is_distrusted    },
-    {"methods are compared at the same level",     methods_are_compared_at_the_same_level},
-    {"shares before and after the start",          shares_before_and_after_the_start     },
-    {"closing levels",                             closing_levels                        },
-    {"warnings about data",                        warnings_about_data                   },
-    {"simulated fits",                             simulated_fits                        },
-    {"priors",                                     priors                                },
-    UNIT_END
-};
+    {"stops when everything is settled", stops_when_settled},
+    {"waits for convergence", waits_for_convergence},
+    {"precision not reached", precision_not_reached},
+    {"closeness lengthens the run", closeness_lengthens_the_run},
+    {"doubt leads to slice sampling", doubt_leads_to_slices},
+    {"missed convergence leads to slice sampling", missed_convergence_leads_to_slices},
+    {"missed again: distrusted", missed_again_is_distrusted},
+    {"disagreement is tried again by slices", disagreement_is_tried_again_by_slices},
+    {"lasting disagreement: distrusted", lasting_disagreement_is_distrusted},
+    {"methods are compared at the same level", methods_are_compared_at_the_same_level},
+    {"shares before and after the start", shares_before_and_after_the_start},
+    {"closing levels", closing_levels},
+    {"warnings about data", warnings_about_data},
+    {"simulated fits", simulated_fits},
+    {"priors", priors},
+    UNIT_END};
 
 int main(void)
 {

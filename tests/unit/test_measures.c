@@ -463,22 +463,21 @@ static void selection_by_meeting(void)
 }
 
 static const struct unit_test tests[] = {
-    {"pr_gain, continuous: exact conditional probabilities", gains_of_a_continuous_endpoint         },
-    {"pr_gain over a number",                                gains_over_a_number                    },
-    {"pr_gain of any level",                                 the_largest_of_any                     },
-    {"pr_gain, binary: shares of draws",                     binary_gains_are_counted               },
-    {"pr_any_gain",                                          any_gain_is_counted                    },
-    {"pr_any_gain over a rate, on the logit",                any_gain_over_a_rate_on_the_logit      },
-    {"pr_response",                                          responses_of_the_selected_level        },
-    {"no spread, and strictly above",                        no_spread_and_strictly_above           },
-    {"pr_level and pr_meets",                                levels_and_meeting                     },
-    {"predictive_next, continuous",                          next_trial_continuous                  },
-    {"predictive_next, binary",                              next_trial_binary                      },
-    {"0 without a selected level",                           without_a_selected_level_measures_are_0},
-    {"selection and closeness",                              selection_and_closeness                },
-    {"selection by meeting",                                 selection_by_meeting                   },
-    UNIT_END
-};
+    {"pr_gain, continuous: exact conditional probabilities", gains_of_a_continuous_endpoint},
+    {"pr_gain over a number", gains_over_a_number},
+    {"pr_gain of any level", the_largest_of_any},
+    {"pr_gain, binary: shares of draws", binary_gains_are_counted},
+    {"pr_any_gain", any_gain_is_counted},
+    {"pr_any_gain over a rate, on the logit", any_gain_over_a_rate_on_the_logit},
+    {"pr_response", responses_of_the_selected_level},
+    {"no spread, and strictly above", no_spread_and_strictly_above},
+    {"pr_level and pr_meets", levels_and_meeting},
+    {"predictive_next, continuous", next_trial_continuous},
+    {"predictive_next, binary", next_trial_binary},
+    {"0 without a selected level", without_a_selected_level_measures_are_0},
+    {"selection and closeness", selection_and_closeness},
+    {"selection by meeting", selection_by_meeting},
+    UNIT_END};
 
 int main(void)
 {

@@ -8,12 +8,11 @@
 #include "unit.h"
 
 static const struct option own[] = {
-    {"cut",      0, OPTION_TEXT,  false, "TIME",  0, 0,   "data cut"      },
-    {"close",    0, OPTION_TEXT,  true,  "LABEL", 0, 0,   "a closed level"},
-    {"analysis", 0, OPTION_WHOLE, false, "K",     1, 100, "which analysis"},
-    {"final",    0, OPTION_FLAG,  false, NULL,    0, 0,   "the last"      },
-    {NULL,       0, OPTION_FLAG,  false, NULL,    0, 0,   NULL            }
-};
+    {"cut", 0, OPTION_TEXT, false, "TIME", 0, 0, "data cut"},
+    {"close", 0, OPTION_TEXT, true, "LABEL", 0, 0, "a closed level"},
+    {"analysis", 0, OPTION_WHOLE, false, "K", 1, 100, "which analysis"},
+    {"final", 0, OPTION_FLAG, false, NULL, 0, 0, "the last"},
+    {NULL, 0, OPTION_FLAG, false, NULL, 0, 0, NULL}};
 
 struct reading {
     struct options o;
@@ -169,19 +168,18 @@ static void help_names_every_row(void)
 }
 
 static const struct unit_test tests[] = {
-    {"anywhere, both forms",          anywhere_and_both_forms      },
-    {"-- ends options",               two_dashes_end_options       },
-    {"repeated only where marked",    repeated_only_where_marked   },
-    {"unknown gets the nearest name", unknown_gets_nearest         },
-    {"no abbreviations",              no_abbreviations             },
-    {"values wanted and unwanted",    values_wanted_and_unwanted   },
-    {"whole numbers in range",        whole_numbers_in_range       },
-    {"seed beyond 53 bits",           seed_beyond_53_bits          },
-    {"negative values, a lone dash",  negative_values_and_lone_dash},
-    {"values are UTF-8",              values_are_utf8              },
-    {"help names every row",          help_names_every_row         },
-    UNIT_END
-};
+    {"anywhere, both forms", anywhere_and_both_forms},
+    {"-- ends options", two_dashes_end_options},
+    {"repeated only where marked", repeated_only_where_marked},
+    {"unknown gets the nearest name", unknown_gets_nearest},
+    {"no abbreviations", no_abbreviations},
+    {"values wanted and unwanted", values_wanted_and_unwanted},
+    {"whole numbers in range", whole_numbers_in_range},
+    {"seed beyond 53 bits", seed_beyond_53_bits},
+    {"negative values, a lone dash", negative_values_and_lone_dash},
+    {"values are UTF-8", values_are_utf8},
+    {"help names every row", help_names_every_row},
+    UNIT_END};
 
 int main(void)
 {

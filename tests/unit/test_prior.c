@@ -83,14 +83,14 @@ static double uniform_quantile(double p, const double *a)
 }
 
 static const struct known known[] = {
-    {"normal",      {-1.5, 2.25}, normal_pdf,      normal_cdf,      normal_quantile     },
-    {"normal",      {3e4, 1e-3},  normal_pdf,      normal_cdf,      normal_quantile     },
-    {"half_normal", {4},          half_normal_pdf, half_normal_cdf, half_normal_quantile},
-    {"half_normal", {0.03},       half_normal_pdf, half_normal_cdf, half_normal_quantile},
-    {"lognormal",   {2.996, 1},   lognormal_pdf,   lognormal_cdf,   lognormal_quantile  },
-    {"lognormal",   {-4, 0.2},    lognormal_pdf,   lognormal_cdf,   lognormal_quantile  },
-    {"uniform",     {0.5, 12},    uniform_pdf,     uniform_cdf,     uniform_quantile    },
-    {"uniform",     {-7, -2},     uniform_pdf,     uniform_cdf,     uniform_quantile    },
+    {"normal", {-1.5, 2.25}, normal_pdf, normal_cdf, normal_quantile},
+    {"normal", {3e4, 1e-3}, normal_pdf, normal_cdf, normal_quantile},
+    {"half_normal", {4}, half_normal_pdf, half_normal_cdf, half_normal_quantile},
+    {"half_normal", {0.03}, half_normal_pdf, half_normal_cdf, half_normal_quantile},
+    {"lognormal", {2.996, 1}, lognormal_pdf, lognormal_cdf, lognormal_quantile},
+    {"lognormal", {-4, 0.2}, lognormal_pdf, lognormal_cdf, lognormal_quantile},
+    {"uniform", {0.5, 12}, uniform_pdf, uniform_cdf, uniform_quantile},
+    {"uniform", {-7, -2}, uniform_pdf, uniform_cdf, uniform_quantile},
 };
 
 static struct prior make(const char *key, const double *arg)
@@ -293,13 +293,13 @@ static void moments_by_integral(void)
         double arg[PRIOR_ARGS];
         double (*pdf)(double x, const double *arg);
     } c[] = {
-        {"normal",        {2, 3},       normal_pdf       },
-        {"half_normal",   {4},          half_normal_pdf  },
-        {"lognormal",     {0.4, 0.7},   lognormal_pdf    },
-        {"lognormal",     {0.4, 0.25},  lognormal_pdf    },
-        {"gamma",         {2.5, 0.8},   gamma_pdf        },
-        {"inverse_gamma", {4.5, 3},     inverse_gamma_pdf},
-        {"student_t",     {7, -2, 1.5}, student_t_pdf    },
+        {"normal", {2, 3}, normal_pdf},
+        {"half_normal", {4}, half_normal_pdf},
+        {"lognormal", {0.4, 0.7}, lognormal_pdf},
+        {"lognormal", {0.4, 0.25}, lognormal_pdf},
+        {"gamma", {2.5, 0.8}, gamma_pdf},
+        {"inverse_gamma", {4.5, 3}, inverse_gamma_pdf},
+        {"student_t", {7, -2, 1.5}, student_t_pdf},
     };
 
     for (size_t i = 0; i < COUNT_OF(c); i++) {
@@ -366,14 +366,14 @@ static void families_of_the_interface(void)
         const char *positive; /* one letter an argument */
         bool computable;
     } want[] = {
-        {"normal",        {"mean", "sd"},              "ny",  true },
-        {"half_normal",   {"sd"},                      "y",   true },
-        {"lognormal",     {"meanlog", "sdlog"},        "ny",  true },
-        {"gamma",         {"shape", "rate"},           "yy",  false},
-        {"inverse_gamma", {"shape", "scale"},          "yy",  false},
-        {"uniform",       {"min", "max"},              "nn",  true },
-        {"student_t",     {"df", "location", "scale"}, "yny", false},
-        {"fixed",         {"value"},                   "n",   true },
+        {"normal", {"mean", "sd"}, "ny", true},
+        {"half_normal", {"sd"}, "y", true},
+        {"lognormal", {"meanlog", "sdlog"}, "ny", true},
+        {"gamma", {"shape", "rate"}, "yy", false},
+        {"inverse_gamma", {"shape", "scale"}, "yy", false},
+        {"uniform", {"min", "max"}, "nn", true},
+        {"student_t", {"df", "location", "scale"}, "yny", false},
+        {"fixed", {"value"}, "n", true},
     };
 
     CU_ASSERT_PTR_NULL(prior_families[COUNT_OF(want)]);
@@ -420,18 +420,18 @@ static void fixed_numbers(void)
 }
 
 static const struct unit_test tests[] = {
-    {"density, cdf and quantile agree with GSL",                  agrees_with_gsl            },
-    {"tails are finite in the logarithm",                         tails_are_finite           },
-    {"no density outside the support",                            nothing_outside_the_support},
-    {"mass between quantiles, on the number and on the variance", mass_between_quantiles     },
-    {"a lognormal variance is a lognormal sd",                    variance_in_closed_form    },
-    {"blocks of points do not show",                              blocks_do_not_show         },
-    {"moments by numerical integral",                             moments_by_integral        },
-    {"moments in closed form",                                    moments_known              },
-    {"moments that do not exist",                                 moments_that_do_not_exist  },
-    {"families and arguments of the interface",                   families_of_the_interface  },
-    {"what can be computed",                                      what_can_be_computed       },
-    {"fixed numbers",                                             fixed_numbers              },
+    {"density, cdf and quantile agree with GSL", agrees_with_gsl},
+    {"tails are finite in the logarithm", tails_are_finite},
+    {"no density outside the support", nothing_outside_the_support},
+    {"mass between quantiles, on the number and on the variance", mass_between_quantiles},
+    {"a lognormal variance is a lognormal sd", variance_in_closed_form},
+    {"blocks of points do not show", blocks_do_not_show},
+    {"moments by numerical integral", moments_by_integral},
+    {"moments in closed form", moments_known},
+    {"moments that do not exist", moments_that_do_not_exist},
+    {"families and arguments of the interface", families_of_the_interface},
+    {"what can be computed", what_can_be_computed},
+    {"fixed numbers", fixed_numbers},
     UNIT_END,
 };
 

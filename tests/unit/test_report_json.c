@@ -224,16 +224,15 @@ static void raw_intervals(void)
 }
 
 static const struct unit_test tests[] = {
-    {"keys and their order",              top_level_keys_and_their_order   },
-    {"values are those of the analysis",  values_are_those_of_the_analysis },
-    {"conditions say what they compare",  conditions_say_what_they_compare },
-    {"absent numbers are null",           absent_numbers_are_null          },
+    {"keys and their order", top_level_keys_and_their_order},
+    {"values are those of the analysis", values_are_those_of_the_analysis},
+    {"conditions say what they compare", conditions_say_what_they_compare},
+    {"absent numbers are null", absent_numbers_are_null},
     {"distrust takes every verdict away", distrust_takes_every_verdict_away},
-    {"draws.csv has one row a draw",      draws_have_one_row_a_draw        },
-    {"draws.csv quotes labels",           draws_quote_labels               },
-    {"raw means, rates and intervals",    raw_intervals                    },
-    UNIT_END
-};
+    {"draws.csv has one row a draw", draws_have_one_row_a_draw},
+    {"draws.csv quotes labels", draws_quote_labels},
+    {"raw means, rates and intervals", raw_intervals},
+    UNIT_END};
 
 int main(void)
 {

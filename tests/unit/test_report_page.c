@@ -183,20 +183,19 @@ static void the_checker_sees_faults(void)
 }
 
 static const struct unit_test tests[] = {
-    {"pages are sound",                                  pages_are_sound                      },
-    {"pages need nothing else",                          pages_need_nothing_else              },
-    {"what a user wrote is escaped",                     what_a_user_wrote_is_escaped         },
-    {"distrusted pages are marked",                      distrusted_pages_are_marked          },
-    {"trusted pages are not marked",                     trusted_pages_are_not_marked         },
-    {"words come before figures",                        words_come_before_figures            },
-    {"every figure has title, axes and table",           every_figure_has_title_axes_and_table},
-    {"absent parts leave no trace",                      absent_parts_leave_no_trace          },
-    {"a fraction is relative to the levels studied",     a_fraction_is_relative_to_the_levels },
-    {"a final analysis with pending subjects is marked", final_with_pending_is_marked         },
-    {"terminal tables line up",                          terminal_tables_line_up              },
-    {"the checker sees faults",                          the_checker_sees_faults              },
-    UNIT_END
-};
+    {"pages are sound", pages_are_sound},
+    {"pages need nothing else", pages_need_nothing_else},
+    {"what a user wrote is escaped", what_a_user_wrote_is_escaped},
+    {"distrusted pages are marked", distrusted_pages_are_marked},
+    {"trusted pages are not marked", trusted_pages_are_not_marked},
+    {"words come before figures", words_come_before_figures},
+    {"every figure has title, axes and table", every_figure_has_title_axes_and_table},
+    {"absent parts leave no trace", absent_parts_leave_no_trace},
+    {"a fraction is relative to the levels studied", a_fraction_is_relative_to_the_levels},
+    {"a final analysis with pending subjects is marked", final_with_pending_is_marked},
+    {"terminal tables line up", terminal_tables_line_up},
+    {"the checker sees faults", the_checker_sees_faults},
+    UNIT_END};
 
 int main(void)
 {

@@ -57,13 +57,11 @@ static void long_lists_leave_labels_out(void)
         labels[k] = "level";
         values[k] = (double)k;
     }
-    const struct chart_bars c = {
-        .levels = {128,     labels, values, "Dose", 100, "none"},
-        .title = "Probability",
-        .label = "chart",
-        .bar_name = {"is", NULL   },
-        .bar = {p,       NULL         }
-    };
+    const struct chart_bars c = {.levels = {128, labels, values, "Dose", 100, "none"},
+                                 .title = "Probability",
+                                 .label = "chart",
+                                 .bar_name = {"is", NULL},
+                                 .bar = {p, NULL}};
     struct text t = TEXT_INIT;
     chart_bars(&t, &c);
     CU_ASSERT_TRUE(markup_is_sound(text_s(&t)));
@@ -78,22 +76,20 @@ static void missing_values_are_not_drawn(void)
 {
     static const char *const labels[] = {"a", "b", "c"};
     static const double values[] = {1, 2, 3}, gap[] = {0.2, NAN, 0.4}, none[] = {NAN, NAN, NAN};
-    const struct chart_response c = {
-        .levels = {3, labels, values, "Dose", -1, NULL},
-        .title = "Response",
-        .label = "chart",
-        .raw_name = "raw",
-        .posterior_name = "posterior",
-        .curve_name = "curve",
-        .raw = gap,
-        .raw_low = none,
-        .raw_high = none,
-        .size = values,
-        .mean = gap,
-        .low = gap,
-        .high = gap,
-        .reference = NAN
-    };
+    const struct chart_response c = {.levels = {3, labels, values, "Dose", -1, NULL},
+                                     .title = "Response",
+                                     .label = "chart",
+                                     .raw_name = "raw",
+                                     .posterior_name = "posterior",
+                                     .curve_name = "curve",
+                                     .raw = gap,
+                                     .raw_low = none,
+                                     .raw_high = none,
+                                     .size = values,
+                                     .mean = gap,
+                                     .low = gap,
+                                     .high = gap,
+                                     .reference = NAN};
     struct text t = TEXT_INIT;
     chart_response(&t, &c);
     CU_ASSERT_TRUE(markup_is_sound(text_s(&t)));
@@ -152,16 +148,15 @@ static void digits_follow_the_error(void)
 }
 
 static const struct unit_test tests[] = {
-    {"axes have round ends",                   axes_have_round_ends                  },
+    {"axes have round ends", axes_have_round_ends},
     {"levels stand to scale where labels fit", levels_stand_to_scale_where_labels_fit},
-    {"long lists leave labels out",            long_lists_leave_labels_out           },
-    {"missing values are not drawn",           missing_values_are_not_drawn          },
-    {"text is escaped, numbers are short",     text_is_escaped_and_numbers_are_short },
-    {"lines break at blanks",                  lines_break_at_blanks                 },
+    {"long lists leave labels out", long_lists_leave_labels_out},
+    {"missing values are not drawn", missing_values_are_not_drawn},
+    {"text is escaped, numbers are short", text_is_escaped_and_numbers_are_short},
+    {"lines break at blanks", lines_break_at_blanks},
     {"probabilities are never exactly 0 or 1", probabilities_are_never_exactly_0_or_1},
-    {"digits follow the error",                digits_follow_the_error               },
-    UNIT_END
-};
+    {"digits follow the error", digits_follow_the_error},
+    UNIT_END};
 
 int main(void)
 {

@@ -267,16 +267,15 @@ static void sentences_name_what_is_compared(void)
 }
 
 static const struct unit_test tests[] = {
-    {"all draws of a tiny world with a control", with_control                   },
-    {"without a control or reference",           without_control                },
-    {"with a reference level",                   with_reference_level           },
-    {"with a reference number",                  with_reference_number          },
-    {"true levels follow the rules",             true_levels_follow_the_rules   },
-    {"true levels carry a tolerance",            true_levels_are_tolerant       },
-    {"true levels on the logit",                 true_levels_on_the_logit       },
-    {"sentences name what is compared",          sentences_name_what_is_compared},
-    UNIT_END
-};
+    {"all draws of a tiny world with a control", with_control},
+    {"without a control or reference", without_control},
+    {"with a reference level", with_reference_level},
+    {"with a reference number", with_reference_number},
+    {"true levels follow the rules", true_levels_follow_the_rules},
+    {"true levels carry a tolerance", true_levels_are_tolerant},
+    {"true levels on the logit", true_levels_on_the_logit},
+    {"sentences name what is compared", sentences_name_what_is_compared},
+    UNIT_END};
 
 int main(void)
 {
