@@ -7,6 +7,7 @@
 #include "posterior/diagnostics.h"
 
 #include <math.h>
+#include <stdbool.h>
 #include <stdint.h>
 #include <string.h>
 
@@ -30,10 +31,20 @@ static struct sequences split_chains(const double *x, size_t n, size_t chains)
     return s;
 }
 
+static bool is_constant(const double *x, size_t n)
+{
+    size_t i = 0;
+    while (i < n && x[i] == x[0])
+        i++;
+    return n > 0 && i == n;
+}
+
 double diag_mean(const double *x, size_t n)
 {
     enum { PIECE = 1024 };
     double total = 0.0;
+    if (is_constant(x, n)) /* a rounded mean would give it a spread, and that an ESS */
+        return x[0];
     for (size_t first = 0; first < n; first += PIECE) {
         const size_t end = n - first < PIECE ? n : first + PIECE;
         double sum = 0.0;
@@ -205,7 +216,7 @@ static double ess_of(const struct sequences *s)
 
 double diag_ess(const double *x, size_t n, size_t chains)
 {
-    if (chains == 1)
+    if (chains == 1 || is_constant(x, n))
         return (double)n;
     struct sequences s = split_chains(x, n, chains);
     const double ess = ess_of(&s);
@@ -215,7 +226,7 @@ double diag_ess(const double *x, size_t n, size_t chains)
 
 double diag_ess_bulk(const double *x, size_t n, size_t chains)
 {
-    if (chains == 1)
+    if (chains == 1 || is_constant(x, n))
         return (double)n;
     struct sequences s = split_chains(x, n, chains);
     normal_scores(s.x, s.chains * s.length);
@@ -242,10 +253,15 @@ double diag_ess_tail(const double *x, size_t n, size_t chains)
     return least;
 }
 
+/* Chains that each stay put at places of their own have no spread within: a number beyond every
+ * threshold stands for infinity, which JSON cannot say. */
 static double rhat_of(const struct sequences *s)
 {
+    static const double most = 0x1p52;
     struct chain_moments m = moments_of(s);
-    const double rhat = m.within > 0.0 ? sqrt(m.pooled / m.within) : NAN;
+    double rhat = NAN;
+    if (m.pooled > 0.0)
+        rhat = m.within > m.pooled / (most * most) ? sqrt(m.pooled / m.within) : most;
     moments_release(&m);
     return rhat;
 }

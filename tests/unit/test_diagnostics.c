@@ -71,12 +71,65 @@ static void ranks(void)
         x[i] = x[i] > 1.0 ? 1.0 : 0.0; /* ties everywhere */
     CU_ASSERT(isfinite(diag_ess_bulk(x, N, CHAINS)));
     CU_ASSERT(isfinite(diag_ess(x, N, CHAINS)));
-    for (size_t i = 0; i < N; i++)
-        x[i] = 7.0;
-    CU_ASSERT_EQUAL(diag_ess(x, N, CHAINS), N);
-    CU_ASSERT(isnan(diag_rhat(x, N, CHAINS)));
     CU_ASSERT_EQUAL(diag_ess(x, N, 1), N);
+    CU_ASSERT(isnan(diag_rhat(x, N, 1)));
     mem_free(x);
+}
+
+/* Sums of 0.1 and 1.3 round, those of 7 do not; 1001 steps have no equal halves. */
+static void constants(void)
+{
+    static const double values[] = {7.0, 0.1, 1.3, -1e6 / 3.0};
+    enum { ODD = CHAINS * 1001 };
+    double *x = mem_new(ODD, sizeof *x);
+    for (size_t v = 0; v < sizeof values / sizeof *values; v++) {
+        for (size_t i = 0; i < ODD; i++)
+            x[i] = values[v];
+        CU_ASSERT_EQUAL(diag_mean(x, ODD), values[v]);
+        CU_ASSERT_EQUAL(diag_sd(x, ODD, diag_mean(x, ODD)), 0.0);
+        CU_ASSERT_EQUAL(diag_ess(x, ODD, CHAINS), ODD);
+        CU_ASSERT_EQUAL(diag_ess_bulk(x, ODD, CHAINS), ODD);
+        CU_ASSERT_EQUAL(diag_ess_tail(x, ODD, CHAINS), ODD);
+        CU_ASSERT_EQUAL(diag_mcse_mean(x, ODD, CHAINS), 0.0);
+        CU_ASSERT(isnan(diag_rhat(x, ODD, CHAINS)));
+    }
+    mem_free(x);
+}
+
+/* Chains that never move are the worst of all, not constants. */
+static void stuck_chains(void)
+{
+    enum { SHORT = CHAINS * 1000 };
+    double *x = mem_new(SHORT, sizeof *x);
+    for (size_t i = 0; i < SHORT; i++)
+        x[i] = 0.1 * (double)(i % CHAINS);
+    const double rhat = diag_rhat(x, SHORT, CHAINS);
+    CU_ASSERT(rhat > 1e6);
+    CU_ASSERT(isfinite(rhat));
+    CU_ASSERT(diag_ess(x, SHORT, CHAINS) < 10.0);
+    CU_ASSERT(diag_ess_bulk(x, SHORT, CHAINS) < 10.0);
+    mem_free(x);
+}
+
+/* Few, tied, skewed, slowly moving values in integer arithmetic; the expected figures come from the
+ * definitions written down directly in Python (exact sums, library quantiles). */
+static void worked_example(void)
+{
+    enum { FEW = 4, LENGTH = FEW * 201 };
+    double x[LENGTH], mirrored[LENGTH];
+    unsigned long state = 12345, level[FEW] = {0};
+    for (size_t i = 0; i < LENGTH; i++) {
+        state = (state * 1103515245UL + 12345UL) % 2147483648UL;
+        const unsigned long u = state / 65536 % 64;
+        level[i % FEW] = i < FEW ? u : (3 * level[i % FEW] + u * u / 16) / 4;
+        x[i] = (double)level[i % FEW];
+        mirrored[i] = -x[i];
+    }
+    CU_ASSERT_DOUBLE_EQUAL(diag_ess(x, LENGTH, FEW), 141.7895606123, 1e-7);
+    CU_ASSERT_DOUBLE_EQUAL(diag_ess_bulk(x, LENGTH, FEW), 131.1833759397, 1e-7);
+    CU_ASSERT_DOUBLE_EQUAL(diag_ess_tail(x, LENGTH, FEW), 199.7024811117, 1e-7);        /* 5% */
+    CU_ASSERT_DOUBLE_EQUAL(diag_ess_tail(mirrored, LENGTH, FEW), 239.9515212346, 1e-7); /* 95% */
+    CU_ASSERT_DOUBLE_EQUAL(diag_rhat(x, LENGTH, FEW), 1.036387044235, 1e-10);
 }
 
 /* Hyndman & Fan 1996, type 7: at position (n - 1) q */
@@ -110,7 +163,10 @@ static const struct unit_test tests[] = {
     {"effective sample size of autoregressions", known_ess},
     {"a shifted chain", shifted_chain},
     {"a chain of another spread", wide_chain},
-    {"ranks, ties, constants", ranks},
+    {"ranks and ties", ranks},
+    {"constants", constants},
+    {"chains that stay put", stuck_chains},
+    {"a worked example", worked_example},
     {"quantiles", quantiles},
     {"Monte Carlo errors of probabilities", errors_of_probabilities},
     {"mean and sd", mean_and_sd},
