@@ -29,8 +29,8 @@ static struct prior default_prior(size_t i, const struct default_scales *s, bool
 
 const struct curve curve_ndlm = {
     .key = "ndlm",
-    .formula = "theta_k ~ N(theta_(k-1), drift_sd^2); order 2: N(2 theta_(k-1) - theta_(k-2), "
-               "drift_sd^2)",
+    .formula = "theta_k ~ N(theta_(k-1), g_k drift_sd^2), g_k = 1 for equal steps",
+    .formula_second = "theta_k ~ N(2 theta_(k-1) - theta_(k-2), drift_sd^2)",
     .kind = CURVE_WALK,
     .parameters = parameters,
     .levels_wanted = 2,

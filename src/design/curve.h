@@ -65,7 +65,8 @@ struct default_scales {
 
 struct curve {
     const char *key;
-    const char *formula; /* for people */
+    const char *formula;        /* for people */
+    const char *formula_second; /* the same with "order": 2, or NULL */
     enum curve_kind kind;
     const struct parameter *parameters; /* name NULL ends the list */
     bool monotone;                      /* in the level, whatever the parameters */

@@ -167,6 +167,11 @@ struct curve_levels design_curve_levels(const struct design *d, const struct mod
     return (struct curve_levels){.count = count, .value = value, .shift = m->shift};
 }
 
+const char *model_formula(const struct model *m)
+{
+    return m->order == 2 && m->curve->formula_second ? m->curve->formula_second : m->curve->formula;
+}
+
 int design_target_find(const struct design *d, const char *name)
 {
     for (size_t i = 0; i < d->targets; i++)

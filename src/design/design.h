@@ -211,6 +211,8 @@ double design_sign(const struct design *d);                  /* +1 higher is bet
  * LEVELS_MAX. */
 struct curve_levels design_curve_levels(const struct design *d, const struct model *m,
                                         double value[LEVELS_MAX]);
+/* The curve's formula for people, as this model's order has it. */
+const char *model_formula(const struct model *m);
 int design_target_find(const struct design *d, const char *name); /* index or -1 */
 int design_level_find(const struct design *d, const char *label); /* index or -1 */
 

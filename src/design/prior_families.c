@@ -51,11 +51,11 @@ static double normal_sd(const double *arg)
 static void half_normal_log_density(const double *arg, size_t n, const double *x,
                                     const double *log_x, double *out)
 {
-    const double sd = arg[0], top = LN_2 - HALF_LN_2_PI - vm_log(sd);
+    const double inverse = 1.0 / arg[0], top = LN_2 - HALF_LN_2_PI - vm_log(arg[0]);
 
     (void)log_x;
     for (size_t i = 0; i < n; i++) {
-        const double z = x[i] / sd, inside = top - 0.5 * z * z;
+        const double z = x[i] * inverse, inside = top - 0.5 * z * z;
         out[i] = x[i] < 0.0 ? -INFINITY : inside;
     }
 }
@@ -85,10 +85,10 @@ static double half_normal_sd(const double *arg)
 static void lognormal_log_density(const double *arg, size_t n, const double *x, const double *log_x,
                                   double *out)
 {
-    const double mean = arg[0], sd = arg[1], top = -HALF_LN_2_PI - vm_log(sd);
+    const double mean = arg[0], inverse = 1.0 / arg[1], top = -HALF_LN_2_PI - vm_log(arg[1]);
 
     for (size_t i = 0; i < n; i++) {
-        const double z = (log_x[i] - mean) / sd, inside = top - 0.5 * z * z - log_x[i];
+        const double z = (log_x[i] - mean) * inverse, inside = top - 0.5 * z * z - log_x[i];
         out[i] = x[i] > 0.0 ? inside : -INFINITY;
     }
 }

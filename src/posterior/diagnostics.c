@@ -139,6 +139,10 @@ static void normal_scores(double *x, size_t n)
 
 /* ---- effective sample size ---- */
 
+/* Chains that are still correlated at this lag have an ESS far below any that is accepted; going on
+ * would only cost time. */
+enum { LAGS_MOST = 8192 };
+
 struct chain_moments {
     double *mean, *variance; /* per chain; variance with length - 1 */
     double within, pooled;   /* W, and var+ of the estimate */
@@ -194,7 +198,7 @@ static double ess_of(const struct sequences *s)
     double ess = total;
     if (m.pooled > 0.0 && s->length > 3) {
         double sum = 0.0, last = INFINITY, odd = 0.0;
-        for (size_t lag = 0; lag + 3 < s->length; lag += 2) {
+        for (size_t lag = 0; lag + 3 < s->length && lag < LAGS_MOST; lag += 2) {
             const double even = lag == 0 ? 1.0 : correlation(s, &m, lag);
             odd = correlation(s, &m, lag + 1);
             double pair = even + odd;

@@ -16,7 +16,7 @@ double diag_ess_bulk(const double *x, size_t n, size_t chains); /* rank-normalis
 double diag_ess_tail(const double *x, size_t n, size_t chains); /* min over 5% and 95% quantile */
 double diag_rhat(const double *x, size_t n, size_t chains);     /* max of bulk and folded, ranks */
 
-/* Mean of x in index order (pairwise blocks of fixed size: the same bytes everywhere), and the sd
+/* Mean of x in index order (pieces of fixed size: the same bytes everywhere), and the sd
  * with n - 1. */
 double diag_mean(const double *x, size_t n);
 double diag_sd(const double *x, size_t n, double mean);

@@ -116,11 +116,16 @@ static void interpolate_two(const struct proposal *q, size_t n, double *const co
         const size_t r = locate(q, 0, coord[0][i], &t, &inside_t);
         const size_t c = locate(q, 1, coord[1][i], &u, &inside_u);
         const struct cell *a = q->cell + r * columns + c, *b = a + columns;
-        const double aa = (1.0 - t) * (1.0 - u), ab = (1.0 - t) * u, ba = t * (1.0 - u), bb = t * u;
-        density[i] = inside_t * inside_u * q->density_scale *
-                     (aa * a[0].weight + ab * a[1].weight + ba * b[0].weight + bb * b[1].weight);
-        mode[i] = aa * a[0].mode + ab * a[1].mode + ba * b[0].mode + bb * b[1].mode;
-        scale[i] = aa * a[0].scale + ab * a[1].scale + ba * b[0].scale + bb * b[1].scale;
+        const double corner[4] = {(1.0 - t) * (1.0 - u), (1.0 - t) * u, t * (1.0 - u), t * u};
+        double sum[4]; /* weight, mode, scale: a cell at a time */
+        for (size_t part = 0; part < 4; part += VL)
+            v_store(sum + part, corner[0] * v_load(&a[0].weight + part) +
+                                    corner[1] * v_load(&a[1].weight + part) +
+                                    (corner[2] * v_load(&b[0].weight + part) +
+                                     corner[3] * v_load(&b[1].weight + part)));
+        density[i] = inside_t * inside_u * q->density_scale * sum[0];
+        mode[i] = sum[1];
+        scale[i] = sum[2];
     }
 }
 

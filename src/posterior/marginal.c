@@ -58,41 +58,35 @@ LANE_FN vd unit_at(const struct observations *o, size_t i)
     return o->precision ? v_load(o->precision + i) : v_set(1);
 }
 
-/* y - X m, the prior mean taken off */
-LANE_FN vd residual_at(const struct problem *p, const struct observations *o, size_t n, size_t k,
-                       size_t i, const double *x, size_t q)
-{
-    vd r = value_at(p, o, n, k, i) - p->mean[0];
-    for (size_t j = 0; j < q; j++)
-        r -= p->mean[j + 1] * v_load(x + (j * p->levels + k) * n + i);
-    return r;
-}
-
-/* W, weighted means of the columns and of the residual */
+/* W, weighted means of the columns and of y. A continuous endpoint's y are centred on their mean.
+ */
 LANE_FN void basis_means(const struct problem *p, const struct observations *o, size_t n, size_t i,
-                         const double *x, size_t q, vd *W, vd *rbar, vd *xbar)
+                         const double *x, size_t q, vd *W, vd *ybar, vd *xbar)
 {
-    vd w_sum = v_set(0), r_sum = v_set(0), x_sum[SLOPES_MAX];
+    vd w_sum = v_set(p->n_total), y_sum = v_set(0);
     for (size_t j = 0; j < q; j++)
-        x_sum[j] = v_set(0);
-    for (size_t k = 0; k < p->levels; k++) {
-        const vd w = unit_weight_at(p, o, n, k, i);
-        w_sum += w;
-        r_sum += w * residual_at(p, o, n, k, i, x, q);
-        for (size_t j = 0; j < q; j++)
-            x_sum[j] += w * v_load(x + (j * p->levels + k) * n + i);
+        xbar[j] = v_set(0);
+    if (!o->precision) {
+        w_sum = v_set(0);
+        for (size_t k = 0; k < p->levels; k++) {
+            w_sum += v_load(o->w + k * n + i);
+            y_sum += v_load(o->w + k * n + i) * v_load(o->y + k * n + i);
+        }
     }
+    for (size_t k = 0; k < p->levels; k++)
+        for (size_t j = 0; j < q; j++)
+            xbar[j] += unit_weight_at(p, o, n, k, i) * v_load(x + (j * p->levels + k) * n + i);
     const vd inverse = v_pick(w_sum > 0.0, 1.0 / v_pick(w_sum > 0.0, w_sum, v_set(1)), v_set(0));
     *W = w_sum * unit_at(o, i);
-    *rbar = r_sum * inverse;
+    *ybar = y_sum * inverse;
     for (size_t j = 0; j < q; j++)
-        xbar[j] = x_sum[j] * inverse;
+        xbar[j] *= inverse;
 }
 
 /* H (lower triangle by rows) and h */
 LANE_FN void basis_equations(const struct problem *p, const struct observations *o, size_t n,
-                             size_t i, const double *x, size_t q, vd kappa, vd rbar, const vd *xbar,
-                             vd *H, vd *h)
+                             size_t i, const double *x, size_t q, vd kappa, vd ybar, vd rbar,
+                             const vd *xbar, vd *H, vd *h)
 {
     for (size_t a = 0, c = 0; a < q; a++) {
         h[a] = v_set(0);
@@ -101,10 +95,12 @@ LANE_FN void basis_equations(const struct problem *p, const struct observations 
     }
     for (size_t k = 0; k < p->levels; k++) {
         const vd w = unit_weight_at(p, o, n, k, i);
-        const vd r = residual_at(p, o, n, k, i, x, q) - rbar;
-        vd dx[SLOPES_MAX];
-        for (size_t a = 0, c = 0; a < q; a++) {
+        vd dx[SLOPES_MAX], r = value_at(p, o, n, k, i) - ybar;
+        for (size_t a = 0; a < q; a++) {
             dx[a] = v_load(x + (a * p->levels + k) * n + i) - xbar[a];
+            r -= p->mean[a + 1] * dx[a];
+        }
+        for (size_t a = 0, c = 0; a < q; a++) {
             const vd wx = w * dx[a];
             h[a] += wx * r;
             for (size_t b = 0; b <= a; b++)
@@ -149,10 +145,13 @@ LANE_FN vd solve(size_t q, vd *H, vd *h)
 LANE_FN void basis_factor_at(const struct problem *p, size_t n, size_t i, const double *x,
                              const struct observations *o, size_t q, double *factor, double *log_m)
 {
-    vd W, rbar, xbar[SLOPES_MAX], H[SLOPES_MAX * (SLOPES_MAX + 1) / 2], h[SLOPES_MAX];
-    basis_means(p, o, n, i, x, q, &W, &rbar, xbar);
+    vd W, ybar, xbar[SLOPES_MAX], H[SLOPES_MAX * (SLOPES_MAX + 1) / 2], h[SLOPES_MAX];
+    basis_means(p, o, n, i, x, q, &W, &ybar, xbar);
+    vd rbar = ybar - p->mean[0];
+    for (size_t j = 0; j < q; j++)
+        rbar -= p->mean[j + 1] * xbar[j];
     const vd spread0 = 1.0 + p->scale[0] * p->scale[0] * W;
-    basis_equations(p, o, n, i, x, q, W / spread0, rbar, xbar, H, h);
+    basis_equations(p, o, n, i, x, q, W / spread0, ybar, rbar, xbar, H, h);
     const vd determinant = solve(q, H, h) * spread0;
     vd centre = rbar, penalty = v_set(0);
     for (size_t j = 0; j < q; j++) {

@@ -326,11 +326,15 @@ static bool zoom(const struct proposal *q, const struct problem *p, const double
     return changed;
 }
 
-static void fill_cells(struct proposal *q, const struct problem *p, const struct proposal_work *w)
+static void fill_cells(struct proposal *q, const struct problem *p, struct proposal_work *w)
 {
     const double top = largest(w->weight, node_count(q), &q->best);
     const size_t rows = q->nodes[0] + 2, columns = q->nodes[1] + 2;
     const double least = p->residual_df > 0.0 ? 1.0 / p->residual_df : 0.0;
+    double *weight = w->below; /* e^(weight - top); all alike where nothing holds mass */
+    for (size_t i = 0; i < w->pt.n; i++)
+        weight[i] = top > -INFINITY ? w->weight[i] - top : 0.0;
+    p->math->exp(w->pt.n, weight, weight);
     for (size_t r = 0; r < rows; r++)
         for (size_t c = 0; c < columns; c++) {
             const size_t i1 = r == 0 ? 0 : r > q->nodes[0] ? q->nodes[0] - 1 : r - 1;
@@ -339,7 +343,7 @@ static void fill_cells(struct proposal *q, const struct problem *p, const struct
             const bool inside = r == i1 + 1 && (c == i2 + 1);
             const double scale = 0.6 * w->scale[node];
             q->cell[r * columns + c] = (struct cell){
-                .weight = inside ? (top > -INFINITY ? vm_exp(w->weight[node] - top) : 1.0) : 0.0,
+                .weight = inside ? weight[node] : 0.0,
                 .mode = w->mode[node],
                 .scale = scale > least ? scale : least,
             };
@@ -436,8 +440,10 @@ void proposal_build(struct proposal *q, const struct problem *p, const struct co
         q->at_zero[d] = p->reflect[d] && q->low[d] == 0.0;
     fill_cells(q, p, w);
     fill_picking(q);
-    for (size_t d = 0; d < q->dims; d++)
+    for (size_t d = 0; d < q->dims; d++) {
         q->mode[d] = w->pt.coord[d][q->best];
+        memcpy(q->node[d], w->pt.coord[d], node_count(q) * sizeof *q->node[d]);
+    }
     q->mode_v = w->mode[q->best];
     if (p->binary)
         keep_pseudo(q, p, w);

@@ -21,7 +21,7 @@ enum {
     NODES_SECOND = 8,
     NODES_MAX = NODES_FIRST * NODES_SECOND,
     CELLS_MAX = (NODES_FIRST + 2) * (NODES_SECOND + 2),
-    GUIDE = 256
+    GUIDE = 1024
 };
 
 /* One node, with a border of weight 0 around the grid. */
@@ -36,9 +36,10 @@ struct proposal {
     struct cell
         cell[CELLS_MAX];  /* [(i1 + 1) * (nodes[1] + 2) + i2 + 1]; one column where dims < 2 */
     double density_scale; /* grid density = interpolated weight * density_scale */
-    double cumulative[NODES_MAX];    /* of picking probabilities, last = 1 */
-    unsigned char guide[GUIDE];      /* first node whose cumulative exceeds g / GUIDE */
-    bool v_from_prior;               /* fewer than two residual degrees of freedom */
+    double node[SHAPES_MAX][NODES_MAX]; /* coordinates of the nodes */
+    double cumulative[NODES_MAX];       /* of picking probabilities, last = 1 */
+    unsigned char guide[GUIDE];         /* first node whose cumulative exceeds g / GUIDE */
+    bool v_from_prior;                  /* fewer than two residual degrees of freedom */
     bool heavy_tails;                /* binary: a level without events or with only events: t(24) */
     double mode[SHAPES_MAX], mode_v; /* best node */
     size_t best;

@@ -108,20 +108,20 @@ static size_t pick_node(const struct proposal *q, double u)
 static void propose_shapes(struct sampler *s)
 {
     const struct proposal *q = s->q;
+    size_t node[BLOCK];
     for (size_t i = 0; q->dims > 0 && i < BLOCK; i++) {
         double u =
             s->uniform[PICK][i / RNG_LANES * RNG_LANES] + (double)(i % RNG_LANES) / RNG_LANES;
         u -= u >= 1.0 ? 1.0 : 0.0;
-        const size_t node = pick_node(q, u);
-        const size_t index[] = {node / q->nodes[1], node % q->nodes[1]};
-        for (size_t d = 0; d < q->dims && d < SHAPES_MAX; d++) {
-            const double tent =
-                s->uniform[JITTER_A0 + 2 * d][i] + s->uniform[JITTER_B0 + 2 * d][i] - 1.0;
-            double c = q->low[d] + q->step[d] * ((double)index[d] + tent);
-            if (s->p->reflect[d] && c < 0.0)
-                c = -c;
-            s->pt.coord[d][i] = c;
-        }
+        node[i] = pick_node(q, u);
+    }
+    for (size_t d = 0; d < q->dims && d < SHAPES_MAX; d++) {
+        const double *a = s->uniform[JITTER_A0 + 2 * d], *b = s->uniform[JITTER_B0 + 2 * d];
+        double *c = s->pt.coord[d];
+        for (size_t i = 0; i < BLOCK; i++)
+            c[i] = q->node[d][node[i]] + q->step[d] * (a[i] + b[i] - 1.0);
+        for (size_t i = 0; s->p->reflect[d] && i < BLOCK; i++)
+            c[i] = c[i] < 0.0 ? -c[i] : c[i];
     }
 }
 
@@ -138,11 +138,14 @@ static bool from_prior(const struct sampler *s, size_t i)
 static void propose_shapes_from_prior(struct sampler *s)
 {
     const struct problem *p = s->p;
-    for (size_t i = 0; i < BLOCK; i++)
-        for (size_t d = 0; from_prior(s, i) && d < p->dims; d++)
+    for (size_t i = 0; i < BLOCK; i++) {
+        if (!from_prior(s, i))
+            continue;
+        for (size_t d = 0; d < p->dims && d < SHAPES_MAX; d++)
             s->pt.coord[d][i] = coordinate_of(
                 p, d,
                 prior_quantile(p->shape_prior[p->dim_shape[d]], s->uniform[JITTER_A0 + 2 * d][i]));
+    }
 }
 
 /* v by the logistic quantile, or from its prior */

@@ -102,8 +102,8 @@ void words_model(struct text *out, const struct analysis_report *r)
 {
     const struct curve *c = r->d->model.curve;
     text_addf(out, "The %s is modelled by the curve \"%s\", %s, over %zu levels of %s",
-              r->d->type == ENDPOINT_BINARY ? "log-odds of the rate" : "mean", c->key, c->formula,
-              r->d->levels, r->d->quantity);
+              r->d->type == ENDPOINT_BINARY ? "log-odds of the rate" : "mean", c->key,
+              model_formula(&r->d->model), r->d->levels, r->d->quantity);
     if (r->d->control >= 0 && !r->d->control_on_curve)
         text_add(out, ", the control apart from it");
     text_add(out, ".");

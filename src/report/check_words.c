@@ -95,7 +95,7 @@ void say_curve(struct text *out, const struct design *d)
 {
     const struct model *m = &d->model;
     text_addf(out, "%s: %s = %s", m->curve->key,
-              d->type == ENDPOINT_BINARY ? "logit of the rate" : "mean", m->curve->formula);
+              d->type == ENDPOINT_BINARY ? "logit of the rate" : "mean", model_formula(m));
     bool walk = m->curve->kind == CURVE_WALK;
     if (walk) {
         text_addf(out, "; order %d, %s", m->order,
