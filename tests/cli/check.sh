@@ -56,11 +56,11 @@ try "a directory instead of a design" a_directory
 try "standard output is full: no file is left" stdout_full
 try "a directory that cannot be made" cannot_make_out
 try "no escapes when redirected" no_escapes
-if command -v script >/dev/null; then
+if script -qec true /dev/null </dev/null >/dev/null 2>&1; then
     try "headings are set off on a terminal" on_terminal
     try "NO_COLOR" no_color
 else
-    echo "skip - $room: headings on a terminal, NO_COLOR # script(1) is not installed"
+    echo "skip - $room: headings on a terminal, NO_COLOR # script(1) finds no pseudo-terminal here"
 fi
 try "same bytes" same_bytes
 exit $failed
