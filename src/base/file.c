@@ -97,8 +97,10 @@ static enum status make_path(const char *path, bool *made, struct err *e)
 {
     char *part = mem_text(path);
     enum status status = STATUS_OK;
-    for (char *p = part + 1; status == STATUS_OK; p++) {
+    for (char *p = part + (*part != '\0'); status == STATUS_OK; p++) {
         const char was = *p;
+        if (was == '\0' && p > part && p[-1] == '/')
+            break; /* "results/": made already */
         if (was != '/' && was != '\0')
             continue;
         *p = '\0';
@@ -201,7 +203,9 @@ enum status outdir_add(struct outdir *d, const char *name, const struct text *by
 {
     char *temporary = temporary_name(name);
     const mode_t mode = d->private_files ? 0600 : 0644;
-    const int fd = openat(d->directory, temporary, O_WRONLY | O_CREAT | O_TRUNC | O_CLOEXEC, mode);
+    /* what a killed run left under this name has a mode, or leads to a place, of its own */
+    unlinkat(d->directory, temporary, 0);
+    const int fd = openat(d->directory, temporary, O_WRONLY | O_CREAT | O_EXCL | O_CLOEXEC, mode);
     enum status status = STATUS_OK;
     if (fd < 0) {
         status = err_system(e, d->path, "create a file in the directory");
@@ -245,6 +249,19 @@ static bool clear_old(const struct outdir *d)
     return true;
 }
 
+/* Takes back what has been moved into place: a failed run leaves no result. */
+static void withdraw(const struct outdir *d)
+{
+    const int cause = errno;
+    for (size_t i = 0; i < d->count; i++) {
+        char *temporary = temporary_name(d->name[i]);
+        if (faccessat(d->directory, temporary, F_OK, 0) != 0 && errno == ENOENT)
+            unlinkat(d->directory, d->name[i], 0);
+        mem_free(temporary);
+    }
+    errno = cause;
+}
+
 enum status outdir_commit(struct outdir *d, struct err *e)
 {
     bool done = !fails_here() && clear_old(d);
@@ -255,8 +272,10 @@ enum status outdir_commit(struct outdir *d, struct err *e)
         done = move_into_place(d, d->main_file);
     if (done)
         done = !fails_here() && fsync(d->directory) == 0;
-    if (!done)
+    if (!done) {
+        withdraw(d);
         return err_system(e, d->path, "put the results into place in the directory");
+    }
     d->committed = true;
     return STATUS_OK;
 }
