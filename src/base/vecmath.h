@@ -9,7 +9,7 @@
  * Domains are total: exp overflows to +inf and underflows to 0, log(0) = -inf, log of a negative
  * number is NaN, NaN in gives NaN out; exp is 0 below -708 (no subnormal results). Accuracy
  * (measured by the tests against GSL and libm): exp, log within 2 ulp; normal cdf within 2e-15
- * absolute and 1e-10 relative down to x = -37; normal quantile within 1e-15 relative (Wichura 1988,
+ * absolute and 1e-8 relative down to x = -37; normal quantile within 1e-15 relative (Wichura 1988,
  * Applied Statistics 37:477, AS 241).
  */
 #ifndef TERRACE_VECMATH_H
