@@ -293,7 +293,7 @@ LANE_FN void chain_draw_at(const struct problem *p, size_t n, size_t i, const do
         const double carry = k + 1 < K ? p->carry[k + 1] : 0.0;
         const vd step = k + 1 < K ? p->gap[k + 1] * q : q;
         const vd B = carry * (C / v_max(C + step, v_set(1e-300)));
-        next = m + B * (next - m) + v_sqrt(C * (1.0 - B)) * e;
+        next = (1.0 - B) * m + B * next + v_sqrt(C * (1.0 - B)) * e;
         v_store(theta + k * n + i, next + p->centre);
     }
 }
@@ -379,7 +379,7 @@ LANE_FN void chain_smooth_at(const struct problem *p, size_t n, size_t i, const 
         const double carry = k + 1 < K ? p->carry[k + 1] : 0.0;
         const vd step = k + 1 < K ? p->gap[k + 1] * q : q;
         const vd B = carry * (C / v_max(C + step, v_set(1e-300)));
-        mean = m + B * (mean - m);
+        mean = (1.0 - B) * m + B * mean;
         variance = C * (1.0 - B) + B * B * variance;
         gain[k] = B; /* between k and k + 1 */
         v_store(out->mean + k * out->stride + i, mean + p->centre);

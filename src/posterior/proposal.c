@@ -137,8 +137,9 @@ static double parabola(struct proposal_work *w, size_t i)
     const double bend = (w->above[i] - 2.0 * w->at[i] + w->below[i]) / (d * d);
     double scale = bend < 0.0 ? 1.0 / sqrt(-bend) : 4.0 * d;
     scale = scale > 4.0 * d ? 4.0 * d : scale < 0.25 * d ? 0.25 * d : scale;
+    w->weight[i] = w->at[i];
     if (!(scale > 0.0) || !(slope == slope))
-        return 0.0;
+        return 0.0; /* impossible points: no parabola, no mass */
     double step = slope * scale * scale;
     step = step > 3.0 * d ? 3.0 * d : step < -3.0 * d ? -3.0 * d : step;
     w->weight[i] = w->at[i] + 0.5 * slope * step; /* and ln scale, when the search is over */

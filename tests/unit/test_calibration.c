@@ -152,6 +152,21 @@ WORLD(few_binary, "emax", "", true, 2)
 WORLD(fixed_parts, "emax",
       ",\"priors\":{\"E0\":{\"fixed\":{\"value\":1}},\"sd\":{\"fixed\":{\"value\":2}}}", false, 6)
 
+WORLD(drift_away_from_zero, "ndlm",
+      ",\"priors\":{\"drift_sd\":{\"lognormal\":{\"meanlog\":-0.5,\"sdlog\":1}},"
+      "\"sd\":{\"lognormal\":{\"meanlog\":0.3,\"sdlog\":0.7}}}",
+      false, 6)
+WORLD(drift_away_from_zero_binary, "ndlm",
+      ",\"spacing\":\"actual\",\"priors\":{\"drift_sd\":{\"lognormal\":{\"meanlog\":-1,\"sdlog\":1}"
+      "}}",
+      true, 10)
+WORLD(half_normal_ed50, "emax",
+      ",\"priors\":{\"ED50\":{\"half_normal\":{\"sd\":30}},"
+      "\"variance\":{\"lognormal\":{\"meanlog\":1,\"sdlog\":1}}}",
+      false, 6)
+WORLD(fixed_shapes, "sigmoid_emax",
+      ",\"priors\":{\"h\":{\"fixed\":{\"value\":2}},\"Emax\":{\"fixed\":{\"value\":3}}}", true, 10)
+
 static const struct unit_test tests[] = {
     {"emax, continuous", emax_continuous},
     {"emax, binary", emax_binary},
@@ -166,6 +181,10 @@ static const struct unit_test tests[] = {
     {"one subject a level, ndlm continuous", few_continuous},
     {"two subjects a level, emax binary", few_binary},
     {"fixed intercept and sd", fixed_parts},
+    {"ndlm with lognormal drift and sd", drift_away_from_zero},
+    {"ndlm with lognormal drift, binary", drift_away_from_zero_binary},
+    {"emax with half-normal ED50, lognormal variance", half_normal_ed50},
+    {"sigmoid_emax with fixed shape and height", fixed_shapes},
     UNIT_END,
 };
 
