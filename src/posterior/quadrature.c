@@ -75,19 +75,48 @@ static void grid_release(struct grid *g)
         mem_free(all[i]);
 }
 
-static void grid_axes(struct grid *g, const struct coordinate_range *r)
+static double cube_root(double x)
+{
+    return x > 0.0 ? vm_exp(vm_log(x) / 3.0) : 0.0;
+}
+
+/* A coordinate that reflects at 0 runs as c = t^3: cells are small where such posteriors are steep.
+ */
+static struct axis shape_axis(const struct problem *p, const struct proposal *q, size_t d,
+                              const struct coordinate_range *r)
+{
+    const double top = q->low[d] + q->step[d] * (double)q->nodes[d];
+    const double high = top > r->high[d] ? top : r->high[d];
+    if (p->reflect[d])
+        return (struct axis){0.0, cube_root(high), 0.0, cube_root(2.0 * high)};
+    const double low = q->low[d] - q->step[d] < r->low[d] ? q->low[d] - q->step[d] : r->low[d];
+    const double room = high - low;
+    return (struct axis){low, high, low - room, high + room};
+}
+
+/* The prior's range, and where the proposal saw the likelihood, however far apart they are. */
+static struct axis v_axis(const struct proposal *q, const struct coordinate_range *r)
+{
+    enum { REACH = 20 };
+    const size_t columns = q->nodes[1] + 2;
+    const struct cell *c =
+        q->cell + (q->best / q->nodes[1] + 1) * columns + q->best % q->nodes[1] + 1;
+    double low = r->v_low, high = r->v_high;
+    if (!q->v_from_prior) {
+        low = c->mode - REACH * c->scale < low ? c->mode - REACH * c->scale : low;
+        high = c->mode + REACH * c->scale > high ? c->mode + REACH * c->scale : high;
+    }
+    return (struct axis){low, high, low - (high - low), high + (high - low)};
+}
+
+static void grid_axes(struct grid *g, const struct proposal *q, const struct coordinate_range *r)
 {
     const struct problem *p = g->p;
     size_t a = 0;
-    for (size_t d = 0; d < p->dims; d++) {
-        const double room = r->high[d] - r->low[d];
-        g->axis[a++] = (struct axis){r->low[d], r->high[d], p->reflect[d] ? 0.0 : r->low[d] - room,
-                                     r->high[d] + room};
-    }
-    if (p->sd_free) {
-        const double room = r->v_high - r->v_low;
-        g->axis[a++] = (struct axis){r->v_low, r->v_high, r->v_low - room, r->v_high + room};
-    }
+    for (size_t d = 0; d < p->dims; d++)
+        g->axis[a++] = shape_axis(p, q, d, r);
+    if (p->sd_free)
+        g->axis[a++] = v_axis(q, r);
     while (a < g->axes)
         g->axis[a++] = (struct axis){-NORMAL_REACH, NORMAL_REACH, -NORMAL_REACH, NORMAL_REACH};
 }
@@ -124,12 +153,31 @@ static size_t cell_index(const struct grid *g, size_t cell, size_t a)
     return cell % g->cells;
 }
 
+/* t -> t^3 where a coordinate reflects; log of the Jacobian 3 t^2 into `jacobian` (NULL: not
+ * wanted) */
+static void place_reflecting(struct grid *g, double *jacobian)
+{
+    for (size_t i = 0; jacobian && i < BLOCK; i++)
+        jacobian[i] = 1.0;
+    for (size_t d = 0; d < g->p->dims; d++)
+        for (size_t i = 0; g->p->reflect[d] && i < BLOCK; i++) {
+            const double t = g->pt.coord[d][i];
+            g->pt.coord[d][i] = t * t * t;
+            if (jacobian)
+                jacobian[i] *= 3.0 * t * t;
+        }
+    if (jacobian)
+        g->p->math->log(BLOCK, jacobian, jacobian);
+}
+
 static void evaluate(struct grid *g)
 {
     const struct problem *p = g->p;
+    double jacobian[BLOCK];
+    place_reflecting(g, jacobian);
     density_at(p, &g->pt);
     for (size_t i = 0; i < BLOCK; i++)
-        g->value[i] = g->pt.log_prior[i] + g->pt.log_m[i];
+        g->value[i] = g->pt.log_prior[i] + g->pt.log_m[i] + jacobian[i];
     if (p->binary) {
         const struct observations o = {NULL, g->y, g->w};
         p->marginal->draw(p, BLOCK, g->pt.x, g->pt.factor, g->normal, g->theta, g->beta);
@@ -229,6 +277,7 @@ static bool accumulate(const struct problem *p, double *weight, size_t total)
 static void write_block(struct grid *g, const struct draw_rows *out, size_t at)
 {
     const struct problem *p = g->p;
+    place_reflecting(g, NULL);
     density_at(p, &g->pt);
     if (!p->binary) {
         p->kernel->normals(&g->rng, (problem_normal_rows(p)) * BLOCK, g->normal);
@@ -280,7 +329,7 @@ void quadrature_run(const struct problem *p, const struct proposal *q,
 {
     struct grid g;
     grid_init(&g, p, q);
-    grid_axes(&g, r);
+    grid_axes(&g, q, r);
     rng_lanes_init(&g.rng, key);
     size_t most = final_cells[g.axes], scan = scan_cells[g.axes], total = 1, scans = 1;
     for (size_t a = 0; a < g.axes; a++) {
