@@ -16,6 +16,7 @@
 #include "base/status.h"
 #include "design/data.h"
 #include "design/design.h"
+#include "posterior/likelihood_fit.h"
 #include "posterior/posterior.h"
 
 struct spread {
@@ -80,6 +81,7 @@ struct analysis_diagnostics {
     size_t chains, draws;
     double max_rhat, min_ess_bulk, min_ess_tail, kish;
     bool slice;               /* the slice sampler made the draws */
+    double lack_of_fit_p;     /* posterior predictive p of the between-level discrepancy; NaN */
     const char *second_name;  /* "quadrature", "slice"; NULL when none was run (simulation) */
     double second_difference; /* largest absolute difference of a probability or measure; NaN */
     bool trusted, imprecise;
@@ -102,6 +104,13 @@ struct analysis {
     /* sentences about shares ("all weights were zero: shared equally", ...) */
     size_t notes;
     char **note;
+    struct likelihood_fit likelihood; /* live analyses; exists false otherwise */
+    /* live analyses: the design's sensitivity models, fitted to the same data; they decide nothing.
+     * Owned; each with the levels and targets of the design and the parameters of its own model,
+     * sensitivity[i].model. */
+    size_t sensitivities;
+    struct analysis *sensitivity;
+    const struct model *model; /* the model of these figures; borrowed from the design */
 };
 
 struct analysis_request {
