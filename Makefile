@@ -102,7 +102,8 @@ CUNIT_LIBS := $(shell pkg-config --libs cunit)
 
 # Sources compiled once per instruction set, into NAME.sse2.o and NAME.avx2.o (and not a third
 # time). No other file ever gets a flag that allows instructions beyond the baseline.
-ISA_SOURCES := src/base/vecmath.c src/posterior/marginal.c src/posterior/kernel.c
+ISA_SOURCES := src/base/vecmath.c src/posterior/kernel.c src/posterior/marginal.c \
+    src/posterior/marginal_basis.c src/posterior/marginal_chain.c src/posterior/marginal_trend.c
 ISAS := sse2 avx2
 
 MAIN := src/command/main.c

@@ -264,7 +264,8 @@ static void clear(struct analysis *out, const struct analysis_request *r)
     mean_curve_release(&out->curve);
     out->number = r->number;
     out->final = r->final;
-    out->diagnostics = (struct analysis_diagnostics){.second_difference = NAN, .lack_of_fit_p = NAN};
+    out->diagnostics =
+        (struct analysis_diagnostics){.second_difference = NAN, .lack_of_fit_p = NAN};
 }
 
 enum status analysis_run(struct analysis *out, struct analyst *w, const struct level_data *data,

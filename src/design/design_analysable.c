@@ -23,28 +23,8 @@ static bool is_in(const char *word, const char *const *list)
     return false;
 }
 
-static const char *const ready_curves[] = {"emax", "sigmoid_emax", "ndlm", "independent", NULL};
-static const char *const ready_families[] = {"normal", "half_normal", "lognormal", "fixed", NULL};
-
-static void check_curve(const struct request *q)
-{
-    const char *key = q->d->model.curve->key;
-
-    if (!is_in(key, ready_curves))
-        FAULT(q, "/model/curve", MSG_LATER_CURVE, key, "emax, sigmoid_emax, ndlm, independent");
-}
-
-static void check_order(const struct request *q)
-{
-    if (q->d->model.order == 2)
-        FAULT(q, "/model/order", MSG_LATER_ORDER);
-}
-
-static void check_control(const struct request *q)
-{
-    if (!q->d->control_on_curve)
-        FAULT(q, "/levels/control_on_curve", MSG_LATER_OFF_CURVE);
-}
+static const char *const ready_families[] = {"normal",  "half_normal", "lognormal",
+                                             "uniform", "fixed",       NULL};
 
 /* The name under which the prior stands. */
 static void prior_pointer(const struct model *m, size_t i, struct text *out)
@@ -82,23 +62,6 @@ static void check_cuts(const struct request *q)
     }
 }
 
-static void check_linear(const struct request *q)
-{
-    static const char *const exact[] = {"normal", "fixed", NULL};
-    const struct model *m = &q->d->model;
-
-    for (size_t i = 0; i < m->parameters; i++) {
-        const char *family = m->prior[i].family->key;
-        struct text place = TEXT_INIT;
-
-        prior_pointer(m, i, &place);
-        if (m->parameter[i]->role == ROLE_LINEAR && is_in(family, ready_families) &&
-            !is_in(family, exact))
-            FAULT(q, text_s(&place), MSG_LATER_LINEAR, m->parameter[i]->name, family);
-        text_release(&place);
-    }
-}
-
 static void check_sensitivity(const struct request *q)
 {
     if (q->d->sensitivities > 0)
@@ -109,12 +72,8 @@ static const struct {
     const char *name;
     void (*check)(const struct request *q);
 } not_yet[] = {
-    {"curves", check_curve},
-    {"walks of order 2", check_order},
-    {"control off the curve", check_control},
     {"families", check_families},
     {"truncation", check_cuts},
-    {"non-normal linear coefficients", check_linear},
     {"sensitivity models", check_sensitivity},
 };
 

@@ -111,13 +111,8 @@
 #define MSG_NOT_FINITE "the truth at level \"%s\" is not a finite number"
 
 /* What this version cannot analyze (design_check_analysable). */
-#define MSG_LATER_CURVE "this version cannot analyze curve %s; it can: %s"
-#define MSG_LATER_ORDER "this version cannot analyze ndlm of order 2; use order 1"
-#define MSG_LATER_OFF_CURVE \
-    "this version cannot analyze a control off the curve; leave control_on_curve out"
 #define MSG_LATER_FAMILY "this version cannot analyze a prior of family %s; it can: %s"
 #define MSG_LATER_TRUNCATED "this version cannot analyze a prior cut off by above or below"
-#define MSG_LATER_LINEAR "this version needs a normal or fixed prior for \"%s\", not %s"
 #define MSG_LATER_SENSITIVITY "this version cannot refit sensitivity models; leave them out"
 
 #endif

@@ -121,3 +121,17 @@ double prior_sd(const struct prior *p)
     sd = has_closed_moments(p) ? p->family->sd(p->arg) : NAN;
     return isfinite(sd) ? sd : NAN;
 }
+
+void prior_support(const struct prior *p, double *low, double *high)
+{
+    *low = p->family->support_low;
+    *high = INFINITY;
+    if (p->family == &prior_family_uniform) {
+        *low = p->arg[0];
+        *high = p->arg[1];
+    }
+    if (p->on_variance) {
+        *low = __builtin_sqrt(*low > 0 ? *low : 0);
+        *high = *high < INFINITY ? __builtin_sqrt(*high) : *high;
+    }
+}

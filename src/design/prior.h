@@ -62,6 +62,7 @@ double prior_quantile(const struct prior *p, double q);
 /* Log density of the number itself at n points (with the Jacobian of on_variance). */
 void prior_log_density(const struct prior *p, size_t n, const double *x, const double *log_x,
                        double *out);
+void prior_support(const struct prior *p, double *low, double *high);
 double prior_mean(const struct prior *p);
 double prior_sd(const struct prior *p); /* NaN when unknown or infinite; 0 for fixed */
 

@@ -8,21 +8,31 @@
 
 /* the logarithm of a shape number is never taken below this: densities stay finite at 0 */
 #define LOG_FLOOR (-700.0)
+#define LEAST 1e-300
+#define HALF_LN_2_PI 0.91893853320467274178
+enum { BLOCK_MOST = 64 };
 
 size_t problem_factor_rows(const struct problem *p)
 {
     const size_t q = p->slopes;
-    return p->chain ? 2 * p->levels + 1 : 2 + 2 * q + q * (q + 1) / 2;
+    if (p->chain)
+        return (p->second_order ? 5 : 2) * p->levels + 1;
+    return 2 + 2 * q + q * (q + 1) / 2 + (p->control >= 0 ? 2 : 0);
 }
 
 size_t problem_basis_rows(const struct problem *p)
 {
-    return p->chain ? 0 : p->slopes * p->levels;
+    return p->chain ? 0 : p->slopes * p->at.count;
 }
 
 size_t problem_normal_rows(const struct problem *p)
 {
-    return p->chain ? p->levels : p->slopes + 1;
+    return p->chain ? p->levels : p->slopes + 1 + (p->control >= 0 ? 1 : 0);
+}
+
+bool problem_draws_first(const struct problem *p)
+{
+    return p->binary || p->weighed;
 }
 
 const struct marginal *marginal_in_force(void)
@@ -88,7 +98,7 @@ static void fixed_shapes(const struct problem *p, struct points *pt)
     for (size_t j = 0; j < p->shapes; j++) {
         if (!prior_is_fixed(p->shape_prior[j]))
             continue;
-        const double value = p->shape_prior[j]->arg[0];
+        const double value = prior_quantile(p->shape_prior[j], 0.5);
         const double log_value = value > 0.0 ? vm_log(value) : LOG_FLOOR;
         for (size_t i = 0; i < pt->n; i++) {
             pt->shape[j][i] = value;
@@ -151,4 +161,49 @@ void density_at(const struct problem *p, struct points *pt)
     if (!p->binary && p->sd_free)
         for (size_t i = 0; i < n; i++)
             pt->log_m[i] -= p->n_total * pt->v[i] + 0.5 * p->ss_within * pt->precision[i];
+}
+
+/* sum[i] += log of the exact prior : its stand-in at x[n] (at most BLOCK_MOST points) */
+static void add_ratio(const struct problem *p, size_t c, size_t n, const double *x, double *sum)
+{
+    double positive[BLOCK_MOST], log_x[BLOCK_MOST], exact[BLOCK_MOST];
+    const double mean = p->stand_in_mean[c], inverse = 1.0 / p->stand_in_sd[c];
+    const double top = -HALF_LN_2_PI + vm_log(inverse);
+    for (size_t i = 0; i < n; i++)
+        positive[i] = x[i] > LEAST ? x[i] : LEAST;
+    p->math->log(n, positive, log_x);
+    prior_log_density(p->exact[c], n, x, log_x, exact);
+    for (size_t i = 0; i < n; i++) {
+        const double z = (x[i] - mean) * inverse;
+        sum[i] += exact[i] - (top - 0.5 * z * z);
+    }
+}
+
+/* the chain's linear coefficients: its start (each level where none follows another), first step */
+static void chain_ratios(const struct problem *p, size_t n, const double *theta, double *sum)
+{
+    double step[BLOCK_MOST];
+    const double *first = theta + p->order[0] * n, *second = theta + p->order[1] * n;
+    for (size_t j = 0; p->exact[0] && j < p->at.count; j++)
+        if (p->carry[j] == 0.0)
+            add_ratio(p, 0, n, theta + p->order[j] * n, sum);
+    if (!p->exact[1])
+        return;
+    for (size_t i = 0; i < n; i++)
+        step[i] = second[i] - first[i];
+    add_ratio(p, 1, n, step, sum);
+}
+
+void density_correction(const struct problem *p, size_t n, const double *theta, const double *beta,
+                        double *sum)
+{
+    if (!p->weighed)
+        return;
+    if (p->chain)
+        chain_ratios(p, n, theta, sum);
+    for (size_t c = 0; !p->chain && c <= p->slopes; c++)
+        if (p->exact[c])
+            add_ratio(p, c, n, beta + c * n, sum);
+    if (p->exact[COLUMNS_MAX])
+        add_ratio(p, COLUMNS_MAX, n, theta + (size_t)p->control * n, sum);
 }

@@ -34,6 +34,10 @@ void points_release(struct points *pt);
 
 /* Natural values and log_prior from the coordinates. */
 void density_prior(const struct problem *p, struct points *pt);
+/* Linear coefficients whose prior is not normal: sum[n] += log of prior : its normal stand-in, at
+ * level means theta[levels][n] and coefficients beta[columns][n] (basis). At most 64 points. */
+void density_correction(const struct problem *p, size_t n, const double *theta, const double *beta,
+                        double *sum);
 /* log_prior, then basis, factor and log_m (all terms that depend on the point). */
 void density_at(const struct problem *p, struct points *pt);
 

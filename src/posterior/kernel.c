@@ -168,12 +168,13 @@ static void logistic_density(size_t n, const double *v, const double *mode, cons
 }
 
 /* log of the mixture of the grid's density and the prior's */
-static void log_mixture(size_t n, const double *density, const double *log_prior, double *out)
+static void log_mixture(size_t n, const double *density, const double *log_prior, double share,
+                        double *out)
 {
     for (size_t i = 0; i < n; i += VL) {
         const vd prior =
             v_exp_core(v_min(v_max(v_load(log_prior + i), v_set(-708.0)), v_set(708.0)));
-        const vd q = v_load(density + i) * (1.0 - 1.0 / PRIOR_EVERY) + prior * (1.0 / PRIOR_EVERY);
+        const vd q = v_load(density + i) * (1.0 - share) + prior * share;
         v_store(out + i, v_log_core(v_max(q, v_set(1e-300))));
     }
 }

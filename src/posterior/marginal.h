@@ -20,6 +20,23 @@ struct observations {
     const double *y, *w;
 };
 
+struct moment_rows {
+    double *mean, *sd, *difference_mean, *difference_sd;
+    size_t stride;
+};
+
+/* The linear part of one kind of curve. */
+struct linear_part {
+    void (*factor)(const struct problem *p, size_t n, const double *x, const double *shape0,
+                   const struct observations *o, double *factor, double *log_m);
+    void (*draw)(const struct problem *p, size_t n, const double *x, const double *factor,
+                 const double *normal, double *theta, double *beta);
+    void (*moments)(const struct problem *p, size_t n, const double *x, const double *factor,
+                    const struct moment_rows *out);
+};
+extern const struct linear_part linear_basis_sse2, linear_basis_avx2, linear_chain_sse2,
+    linear_chain_avx2, linear_trend_sse2, linear_trend_avx2;
+
 struct marginal {
     /* factor rows and log M (without the -n ln sd and within-level terms of sd). x: basis rows;
      * shape0: the chain's drift sd (NULL where the curve has no shape). */

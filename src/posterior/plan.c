@@ -10,35 +10,50 @@
 #include "posterior/posterior.h"
 #include "posterior/sampler.h"
 
-/* Coordinates are scanned between these quantiles of their priors. */
+/* Coordinates are scanned between these quantiles of their priors. Where that range is wider than
+ * HEAVY times the middle half, the tails are heavy and the first pass of the scan goes by
+ * probability. */
 #define RANGE_TAIL 1e-6
+#define HEAVY 30.0
+/* Proposals from the prior keep all of it within reach; heavy tails need more of them. */
+#define PRIOR_SHARE (1.0 / 64.0)
+#define PRIOR_SHARE_HEAVY 0.25
+/* A stand-in for a prior without variance: this many times the middle half. */
+#define WIDE 4.0
+/* ends of a support are moved inward by this share, so that rounding never leaves it */
+#define INWARD 1e-12
 
-static bool is_normal_or_fixed(const struct prior *p)
+double problem_quantile(const struct prior *p, double u)
 {
-    return prior_is_fixed(p) || (p->family == prior_normal(0, 1).family && prior_is_computable(p));
+    const double x = prior_quantile(p, u);
+    return x > PROBLEM_LARGEST ? PROBLEM_LARGEST : x < -PROBLEM_LARGEST ? -PROBLEM_LARGEST : x;
 }
 
-static enum status check_model(const struct design *d, const struct model *m, struct err *e)
+double problem_log_quantile(const struct prior *p, double u)
 {
-    enum status status = STATUS_OK;
-    if (!d->control_on_curve && d->control != LEVEL_NONE)
-        status = err_add(e, STATUS_INPUT, d->file, 0, "/levels/control_on_curve",
-                         "a control off the curve cannot be fitted yet by this version");
-    if (m->order == 2)
-        status = err_add(e, STATUS_INPUT, d->file, 0, "/model/order",
-                         "a walk of order 2 cannot be fitted yet by this version");
-    for (size_t i = 0; i < m->parameters; i++) {
-        const struct prior *p = &m->prior[i];
-        const bool linear = m->parameter[i]->role == ROLE_LINEAR;
-        if (linear ? is_normal_or_fixed(p) : prior_is_fixed(p) || prior_is_computable(p))
-            continue;
-        status = err_add(e, STATUS_INPUT, d->file, 0, "/model/priors",
-                         "the prior on %s cannot be computed yet by this version: allowed are %s",
-                         m->parameter[i]->name,
-                         linear ? "normal and fixed, not truncated"
-                                : "half_normal, lognormal, uniform and fixed, not truncated");
+    const double x = problem_quantile(p, u), least = 1.0 / PROBLEM_LARGEST;
+    return vm_log(x > least ? x : least);
+}
+
+double problem_coordinate(const struct problem *p, size_t dim, double u)
+{
+    const size_t j = p->dim_shape[dim];
+    return p->coordinate[j] == COORDINATE_LOG ? problem_log_quantile(p->shape_prior[j], u)
+                                              : problem_quantile(p->shape_prior[j], u);
+}
+
+/* log: in the coordinate ln x, whose support has no end at 0 */
+static void support_edges(const struct prior *p, bool log, double *low, double *high)
+{
+    prior_support(p, low, high);
+    if (log) {
+        *low = *low > 0.0 ? vm_log(*low) : -INFINITY;
+        *high = *high < INFINITY ? vm_log(*high) : INFINITY;
     }
-    return status;
+    if (*low > -INFINITY)
+        *low += INWARD * fabs(*low);
+    if (*high < INFINITY)
+        *high -= INWARD * fabs(*high);
 }
 
 static void plan_shape(struct plan *plan, size_t i)
@@ -46,17 +61,22 @@ static void plan_shape(struct plan *plan, size_t i)
     struct problem *p = &plan->problem;
     const size_t j = p->shapes++;
     const struct parameter *a = plan->m->parameter[i];
+    const struct prior *prior = &plan->m->prior[i];
+    const bool log = a->coordinate == COORDINATE_LOG;
     p->coordinate[j] = a->coordinate;
-    p->shape_prior[j] = &plan->m->prior[i];
-    if (prior_is_fixed(p->shape_prior[j]))
+    p->shape_prior[j] = prior;
+    if (prior_is_fixed(prior))
         return;
     const size_t d = p->dims++;
-    const double low = prior_quantile(p->shape_prior[j], RANGE_TAIL);
-    const double high = prior_quantile(p->shape_prior[j], 1.0 - RANGE_TAIL);
     p->dim_shape[d] = j;
-    p->reflect[d] = a->coordinate == COORDINATE_SELF && a->positive;
-    plan->range.low[d] = p->reflect[d] ? 0.0 : a->coordinate == COORDINATE_LOG ? vm_log(low) : low;
-    plan->range.high[d] = a->coordinate == COORDINATE_LOG ? vm_log(high) : high;
+    support_edges(prior, log, &p->edge_low[d], &p->edge_high[d]);
+    p->reflect[d] = !log && a->positive && p->edge_low[d] <= 0.0;
+    if (p->reflect[d])
+        p->edge_low[d] = 0.0;
+    plan->range.low[d] = p->reflect[d] ? 0.0 : problem_coordinate(p, d, RANGE_TAIL);
+    plan->range.high[d] = problem_coordinate(p, d, 1.0 - RANGE_TAIL);
+    p->heavy[d] = plan->range.high[d] - plan->range.low[d] >
+                  HEAVY * (problem_coordinate(p, d, 0.75) - problem_coordinate(p, d, 0.25));
 }
 
 static void plan_residual(struct plan *plan, const struct prior *prior)
@@ -65,28 +85,68 @@ static void plan_residual(struct plan *plan, const struct prior *prior)
     struct problem *p = &plan->problem;
     p->sd_prior = prior;
     p->sd_free = !prior_is_fixed(prior);
-    p->sd_fixed = p->sd_free ? 1.0 : prior->arg[0];
+    p->sd_fixed = p->sd_free ? 1.0 : prior_quantile(prior, 0.5);
     if (!p->sd_free)
         return;
-    plan->range.v_low = vm_log(prior_quantile(prior, RANGE_TAIL));
-    plan->range.v_high = vm_log(prior_quantile(prior, 1.0 - RANGE_TAIL));
+    support_edges(prior, true, &p->v_edge_low, &p->v_edge_high);
+    plan->range.v_low = problem_log_quantile(prior, RANGE_TAIL);
+    plan->range.v_high = problem_log_quantile(prior, 1.0 - RANGE_TAIL);
     double density;
     const double log_tiny = vm_log(tiny);
     prior_log_density(prior, 1, &tiny, &log_tiny, &density);
     plan->sd_vanishes = density < -100.0;
 }
 
+/* The normal that stands in for the prior of a linear coefficient; c: its place in `exact`. */
+static void plan_linear(struct plan *plan, size_t c, const struct prior *prior, double *mean,
+                        double *scale)
+{
+    struct problem *p = &plan->problem;
+    if (prior_is_fixed(prior)) {
+        *mean = prior->arg[0];
+        *scale = 0.0;
+        return;
+    }
+    if (prior->family == prior_normal(0, 1).family && !prior_is_truncated(prior)) {
+        *mean = prior->arg[0];
+        *scale = prior->arg[1];
+        return;
+    }
+    const double middle = prior_mean(prior), sd = prior_sd(prior);
+    const double quartiles = problem_quantile(prior, 0.75) - problem_quantile(prior, 0.25);
+    *mean = isfinite(middle) ? middle : problem_quantile(prior, 0.5);
+    *scale = isfinite(sd) && sd > 0.0 ? sd : WIDE * quartiles;
+    p->weighed = true;
+    p->exact[c] = prior;
+    p->stand_in_mean[c] = *mean;
+    p->stand_in_sd[c] = *scale;
+}
+
+static void plan_order(struct plan *plan)
+{
+    struct problem *p = &plan->problem;
+    const struct design *d = plan->d;
+    size_t j = 0;
+    p->control = d->control_on_curve ? -1 : d->control;
+    for (size_t k = 0; k < p->levels; k++)
+        if ((int)k != p->control)
+            plan->order[j++] = k;
+    if (p->control >= 0)
+        plan->order[j] = (size_t)p->control;
+    p->order = plan->order;
+}
+
 static void plan_chain(struct plan *plan)
 {
     struct problem *p = &plan->problem;
-    const size_t K = p->levels;
-    const double mean_gap = (plan->value[K - 1] - plan->value[0]) / (double)(K - 1);
-    for (size_t k = 0; k < K; k++) {
-        plan->carry[k] = k > 0 && p->curve->kind == CURVE_WALK ? 1.0 : 0.0;
-        plan->gap[k] = k > 0 && plan->m->spacing_actual
-                           ? (plan->value[k] - plan->value[k - 1]) / mean_gap
-                           : 1.0;
+    const size_t m = p->at.count;
+    const double *x = plan->value, mean_gap = (x[m - 1] - x[0]) / (double)(m - 1);
+    for (size_t j = 0; j < p->levels; j++) {
+        const bool walks = j > 0 && j < m && p->curve->kind == CURVE_WALK;
+        plan->carry[j] = walks ? 1.0 : 0.0;
+        plan->gap[j] = walks && plan->m->spacing_actual ? (x[j] - x[j - 1]) / mean_gap : 1.0;
     }
+    p->second_order = plan->m->order == 2 && p->curve->kind == CURVE_WALK;
     p->carry = plan->carry;
     p->gap = plan->gap;
 }
@@ -108,13 +168,31 @@ static bool wants_moments(const struct design *d)
     return wanted && d->type == ENDPOINT_CONTINUOUS;
 }
 
+static void plan_parameters(struct plan *plan)
+{
+    struct problem *p = &plan->problem;
+    const struct model *m = plan->m;
+    size_t columns = 0;
+    for (size_t i = 0; i < m->parameters; i++) {
+        const struct prior *prior = &m->prior[i];
+        if (m->parameter[i]->role == ROLE_SHAPE)
+            plan_shape(plan, i);
+        if (m->parameter[i]->role == ROLE_RESIDUAL)
+            plan_residual(plan, prior);
+        if (m->parameter[i]->role == ROLE_CONTROL)
+            plan_linear(plan, COLUMNS_MAX, prior, &p->control_mean, &p->control_scale);
+        if (m->parameter[i]->role == ROLE_LINEAR) {
+            plan_linear(plan, columns, prior, &p->mean[columns], &p->scale[columns]);
+            columns++;
+        }
+    }
+    p->slopes = p->chain ? 0 : columns - 1;
+}
+
 enum status plan_new(struct plan **out, const struct design *d, const struct model *m,
                      struct err *e)
 {
-    *out = NULL;
-    const enum status status = check_model(d, m, e);
-    if (status != STATUS_OK)
-        return status;
+    (void)e;
     struct plan *plan = mem_new(1, sizeof *plan);
     plan->d = d;
     plan->m = m;
@@ -129,22 +207,12 @@ enum status plan_new(struct plan **out, const struct design *d, const struct mod
     p->chain = m->curve->kind != CURVE_BASIS;
     p->reference = d->reference_level;
     p->sd_fixed = 1.0;
-    plan->moments = wants_moments(d);
-    size_t columns = 0;
-    for (size_t i = 0; i < m->parameters; i++) {
-        const struct prior *prior = &m->prior[i];
-        if (m->parameter[i]->role == ROLE_SHAPE)
-            plan_shape(plan, i);
-        if (m->parameter[i]->role == ROLE_RESIDUAL)
-            plan_residual(plan, prior);
-        if (m->parameter[i]->role != ROLE_LINEAR)
-            continue;
-        p->mean[columns] = prior->arg[0];
-        p->scale[columns++] = prior_is_fixed(prior) ? 0.0 : prior->arg[1];
-    }
-    p->slopes = p->chain ? 0 : columns - 1;
+    plan_order(plan);
+    plan_parameters(plan);
     if (p->chain)
         plan_chain(plan);
+    p->prior_share = p->heavy[0] || p->heavy[1] ? PRIOR_SHARE_HEAVY : PRIOR_SHARE;
+    plan->moments = wants_moments(d) && !p->weighed;
     *out = plan;
     return STATUS_OK;
 }
@@ -154,25 +222,36 @@ void plan_free(struct plan *plan)
     mem_free(plan);
 }
 
+/* Responses are centred on their mean over the curve. */
+static void plan_data(struct problem *p, const struct level_data *data)
+{
+    double sum = 0.0;
+    p->n = data->n;
+    p->events = data->events;
+    for (size_t k = 0; k < p->levels; k++) {
+        const bool on = (int)k != p->control;
+        p->n_total += data->n[k];
+        p->n_curve += on ? data->n[k] : 0.0;
+        p->ss_within += p->binary ? 0.0 : data->ss[k];
+        sum += !p->binary && on ? data->n[k] * data->mean[k] : 0.0;
+    }
+    p->centre = p->n_curve > 0.0 ? sum / p->n_curve : 0.0;
+    p->mean[0] -= p->centre;
+    p->control_mean -= p->centre;
+}
+
 void plan_problem(struct problem *out, const struct plan *plan, const struct level_data *data,
                   double *y)
 {
+    double filled = 0.0, linear = 0.0;
     *out = plan->problem;
-    out->n = data->n;
-    out->events = data->events;
+    plan_data(out, data);
     out->y = y;
-    double filled = 0.0, sum = 0.0, linear = 0.0;
     for (size_t k = 0; k < out->levels; k++) {
-        out->n_total += data->n[k];
         filled += data->n[k] > 0.0 ? 1.0 : 0.0;
-        out->ss_within += out->binary ? 0.0 : data->ss[k];
-        sum += out->binary ? 0.0 : data->n[k] * data->mean[k];
+        y[k] = !out->binary && data->n[k] > 0.0 ? data->mean[k] - out->centre : 0.0;
     }
     for (size_t i = 0; i < plan->m->parameters; i++)
         linear += plan->m->parameter[i]->role != ROLE_RESIDUAL ? 1.0 : 0.0;
-    out->centre = out->n_total > 0.0 ? sum / out->n_total : 0.0;
-    out->mean[0] -= out->centre;
     out->residual_df = out->n_total - (!out->chain && linear < filled ? linear : filled);
-    for (size_t k = 0; k < out->levels; k++)
-        y[k] = !out->binary && data->n[k] > 0.0 ? data->mean[k] - out->centre : 0.0;
 }

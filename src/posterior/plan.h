@@ -12,6 +12,7 @@ struct plan {
     const struct model *m;
     struct problem problem; /* without data */
     double value[LEVELS_MAX], carry[LEVELS_MAX], gap[LEVELS_MAX];
+    size_t order[LEVELS_MAX];
     struct coordinate_range range;
     bool sd_vanishes; /* the prior on sd vanishes at 0 */
     bool moments;     /* some result averages exact conditional probabilities */

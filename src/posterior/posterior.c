@@ -323,9 +323,11 @@ bool posterior_curve_at(const struct plan *plan, const struct draws *d, double x
     const struct problem *p = &plan->problem;
     if (p->chain)
         return false;
-    const struct curve_levels at = {.count = 1, .value = &x, .shift = p->at.shift};
+    /* a curve may ask for the largest level of the design: it stands second */
+    const double pair[2] = {x, p->at.value[p->at.count - 1]};
+    const struct curve_levels at = {.count = 2, .value = pair, .shift = p->at.shift};
     const struct curve_rows r = curve_rows(p->curve, d);
-    double *log_shape[SHAPES_MAX], *basis = mem_new(COLUMNS_MAX * d->n, sizeof *basis);
+    double *log_shape[SHAPES_MAX], *basis = mem_new(2 * COLUMNS_MAX * d->n, sizeof *basis);
     for (size_t j = 0; j < SHAPES_MAX; j++) {
         log_shape[j] = mem_new(d->n, sizeof *basis);
         if (j < r.shapes)
@@ -336,7 +338,7 @@ bool posterior_curve_at(const struct plan *plan, const struct draws *d, double x
     memcpy(out, d->parameter, d->n * sizeof *out); /* the intercept is the first parameter */
     for (size_t c = 1; c < r.columns; c++)
         for (size_t i = 0; i < d->n; i++)
-            out[i] += r.beta[c][i] * basis[(c - 1) * d->n + i];
+            out[i] += r.beta[c][i] * basis[2 * (c - 1) * d->n + i];
     for (size_t j = 0; j < SHAPES_MAX; j++)
         mem_free(log_shape[j]);
     mem_free(basis);

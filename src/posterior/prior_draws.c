@@ -39,18 +39,15 @@ static void draw_coordinates(const struct problem *p, struct points *pt, struct 
 {
     double u[BLOCK];
     for (size_t d = 0; d < p->dims; d++) {
-        const size_t j = p->dim_shape[d];
         p->kernel->uniforms(rng, BLOCK, u);
-        for (size_t i = 0; i < BLOCK; i++) {
-            const double x = prior_quantile(p->shape_prior[j], u[i]);
-            pt->coord[d][i] = p->coordinate[j] == COORDINATE_LOG ? vm_log(x) : x;
-        }
+        for (size_t i = 0; i < BLOCK; i++)
+            pt->coord[d][i] = problem_coordinate(p, d, u[i]);
     }
     if (!p->sd_free)
         return;
     p->kernel->uniforms(rng, BLOCK, u);
     for (size_t i = 0; i < BLOCK; i++)
-        pt->v[i] = vm_log(prior_quantile(p->sd_prior, u[i]));
+        pt->v[i] = problem_log_quantile(p->sd_prior, u[i]);
 }
 
 void prior_draws(const struct plan *plan, const struct rng_key *key, size_t count,

@@ -12,6 +12,8 @@
  * search for the mode of v; prior quantiles that integrate v where it is proposed from its prior.
  */
 #define KEEP 9.0
+/* an outermost node of equal probability stands for its interval up to this share of it */
+#define OUTER 0.05
 enum { PASSES = 6, ROUNDS = 6, PRIOR_POINTS = 16, NEWTON_STEPS = 5 };
 
 struct proposal_work {
@@ -106,6 +108,7 @@ static void place_nodes(struct proposal *q, const struct box *box, struct points
         q->low[d] = d < q->dims ? box->low[d] : 0.0;
         q->step[d] = q->nodes[d] > 1 ? width / (double)(q->nodes[d] - 1) : 1.0;
         q->inverse_step[d] = 1.0 / q->step[d];
+        q->high[d] = d < q->dims ? box->high[d] : 0.0;
     }
     const size_t count = node_count(q);
     pt->n = padded(count);
@@ -116,12 +119,17 @@ static void place_nodes(struct proposal *q, const struct box *box, struct points
     }
 }
 
+static double within(double x, double low, double high)
+{
+    return x < low ? low : x > high ? high : x;
+}
+
 /* log posterior at v = mode + shift * scale; basis and shape priors are kept */
 static void evaluate_v(const struct problem *p, struct proposal_work *w, double shift, double *out)
 {
     struct points *pt = &w->pt;
     for (size_t i = 0; i < pt->n; i++)
-        pt->v[i] = w->mode[i] + shift * w->scale[i];
+        pt->v[i] = within(w->mode[i] + shift * w->scale[i], p->v_edge_low, p->v_edge_high);
     density_at(p, pt);
     pt->same_shapes = true;
     for (size_t i = 0; i < pt->n; i++)
@@ -130,7 +138,7 @@ static void evaluate_v(const struct problem *p, struct proposal_work *w, double 
 
 /* One step of the search: the parabola through three points. Returns its step in units of the new
  * scale; the node's weight is the Gaussian approximation's integral. */
-static double parabola(struct proposal_work *w, size_t i)
+static double parabola(const struct problem *p, struct proposal_work *w, size_t i)
 {
     const double d = w->scale[i];
     const double slope = (w->above[i] - w->below[i]) / (2.0 * d);
@@ -143,7 +151,7 @@ static double parabola(struct proposal_work *w, size_t i)
     double step = slope * scale * scale;
     step = step > 3.0 * d ? 3.0 * d : step < -3.0 * d ? -3.0 * d : step;
     w->weight[i] = w->at[i] + 0.5 * slope * step; /* and ln scale, when the search is over */
-    w->mode[i] += step;
+    w->mode[i] = within(w->mode[i] + step, p->v_edge_low, p->v_edge_high);
     w->scale[i] = scale;
     return fabs(step) / scale;
 }
@@ -170,7 +178,7 @@ static bool weigh_by_mode(const struct problem *p, struct proposal_work *w, size
         evaluate_v(p, w, 1.0, w->above);
         const double top = largest(w->at, count, &best);
         for (size_t i = 0; i < w->pt.n; i++) {
-            const double step = parabola(w, i);
+            const double step = parabola(p, w, i);
             if (w->at[i] > top - KEEP && step > worst)
                 worst = step;
         }
@@ -190,7 +198,7 @@ static void weigh_by_prior(const struct problem *p, struct proposal_work *w)
     for (size_t i = 0; i < n; i++)
         w->weight[i] = -INFINITY;
     for (int k = 0; k < PRIOR_POINTS; k++) {
-        const double v = vm_log(prior_quantile(p->sd_prior, (k + 0.5) / PRIOR_POINTS));
+        const double v = problem_log_quantile(p->sd_prior, (k + 0.5) / PRIOR_POINTS);
         for (size_t i = 0; i < n; i++)
             w->pt.v[i] = v;
         density_at(p, &w->pt);
@@ -295,6 +303,16 @@ static void kept_range(const struct proposal *q, const double *weight, double to
     }
 }
 
+/* An end of the support within a step of the box becomes the box's. */
+static void snap(const struct problem *p, size_t d, double steps, double *low, double *high)
+{
+    const double step = (*high - *low) / steps;
+    if (*low < p->edge_low[d] + step)
+        *low = p->edge_low[d];
+    if (*high > p->edge_high[d] - step)
+        *high = p->edge_high[d];
+}
+
 /* Narrows (or widens, where an edge holds mass) the box; false when it fits well. */
 static bool zoom(const struct proposal *q, const struct problem *p, const double *weight,
                  const struct coordinate_range *r, struct box *box)
@@ -313,11 +331,9 @@ static bool zoom(const struct proposal *q, const struct problem *p, const double
             low -= h;
         if (last == q->nodes[d] - 1)
             high += h;
-        const double floor = p->reflect[d] ? 0.0 : r->low[d] - room;
-        low = low < floor ? floor : low;
-        high = high > r->high[d] + room ? r->high[d] + room : high;
-        if (p->reflect[d] && low < (high - low) / (double)(q->nodes[d] - 1))
-            low = 0.0;
+        low = within(low, r->low[d] - room, r->high[d] + room);
+        high = within(high, r->low[d] - room, r->high[d] + room);
+        snap(p, d, (double)(q->nodes[d] - 1), &low, &high);
         if (high - low < 0.7 * width || low < box->low[d] || high > box->high[d]) {
             box->low[d] = low;
             box->high[d] = high;
@@ -358,8 +374,10 @@ static void fill_picking(struct proposal *q)
     for (size_t i = 0; i < count; i++) {
         const size_t i1 = node_index(q, i, 0), i2 = node_index(q, i, 1);
         double weight = q->cell[(i1 + 1) * columns + i2 + 1].weight;
-        if ((q->at_zero[0] && i1 == 0) || (q->at_zero[1] && i2 == 0))
-            weight *= 0.5; /* its tent is folded at 0 */
+        if ((q->folds_low[0] && i1 == 0) || (q->folds_high[0] && i1 == q->nodes[0] - 1))
+            weight *= 0.5;
+        if ((q->folds_low[1] && i2 == 0) || (q->folds_high[1] && i2 == q->nodes[1] - 1))
+            weight *= 0.5;
         sum += weight;
         q->cumulative[i] = sum;
     }
@@ -384,7 +402,6 @@ static void keep_pseudo(struct proposal *q, const struct problem *p, const struc
             q->pseudo_y[i * p->levels + k] = w->y[k * n + i];
             q->pseudo_w[i * p->levels + k] = w->w[k * n + i];
         }
-    q->heavy_tails = false;
     for (size_t k = 0; k < p->levels; k++)
         if (p->n[k] > 0.0 && (p->events[k] == 0.0 || p->events[k] == p->n[k]))
             q->heavy_tails = true;
@@ -397,9 +414,9 @@ static void start_v(const struct problem *p, struct proposal_work *w)
         for (size_t k = 0; k < p->levels; k++)
             total += p->n[k] * p->y[k] * p->y[k];
     const double v =
-        total > 0.0 ? 0.5 * vm_log(total / mean_df) : vm_log(prior_quantile(p->sd_prior, 0.5));
+        total > 0.0 ? 0.5 * vm_log(total / mean_df) : problem_log_quantile(p->sd_prior, 0.5);
     for (size_t i = 0; i < NODES_MAX; i++) {
-        w->mode[i] = v;
+        w->mode[i] = within(v, p->v_edge_low, p->v_edge_high);
         w->scale[i] = 1.0 / sqrt(2.0 * mean_df);
     }
 }
@@ -416,15 +433,53 @@ static void restart_v(struct proposal_work *w, size_t count)
     }
 }
 
+/* The box along a heavy-tailed dim: nodes equally likely under the prior, of which those within
+ * KEEP of the best likelihood stay. */
+static void box_by_probability(struct proposal *q, const struct problem *p, size_t d,
+                               struct proposal_work *w, struct box *box)
+{
+    struct points *pt = &w->pt;
+    const size_t count = node_count(q), nodes = q->nodes[d];
+    size_t first, last, best;
+    place_nodes(q, box, pt);
+    for (size_t i = 0; i < pt->n; i++) {
+        const size_t node = i < count ? i : count - 1;
+        pt->coord[d][i] =
+            problem_coordinate(p, d, ((double)node_index(q, node, d) + 0.5) / (double)nodes);
+    }
+    pt->same_shapes = false;
+    weigh_nodes(q, p, w, ROUNDS);
+    for (size_t i = 0; i < count; i++)
+        w->weight[i] -= pt->log_prior_shape[i];
+    kept_range(q, w->weight, largest(w->weight, count, &best), d, &first, &last);
+    const double low = first == 0 ? OUTER : (double)first - 0.5;
+    const double high = last == nodes - 1 ? (double)nodes - OUTER : (double)last + 1.5;
+    box->low[d] = p->reflect[d] ? 0.0 : problem_coordinate(p, d, low / (double)nodes);
+    box->high[d] = problem_coordinate(p, d, high / (double)nodes);
+    if (p->sd_free)
+        start_v(p, w);
+}
+
+static void first_box(struct proposal *q, const struct problem *p, const struct coordinate_range *r,
+                      struct proposal_work *w, struct box *box)
+{
+    memcpy(box->low, r->low, sizeof box->low);
+    memcpy(box->high, r->high, sizeof box->high);
+    for (size_t d = 0; d < q->dims; d++)
+        if (p->heavy[d])
+            box_by_probability(q, p, d, w, box);
+    for (size_t d = 0; d < q->dims; d++)
+        snap(p, d, (double)(q->nodes[d] - 1), &box->low[d], &box->high[d]);
+}
+
 void proposal_build(struct proposal *q, const struct problem *p, const struct coordinate_range *r,
                     struct proposal_work *w)
 {
     struct box box;
-    memcpy(box.low, r->low, sizeof box.low);
-    memcpy(box.high, r->high, sizeof box.high);
     q->v_from_prior = p->sd_free && p->residual_df < 2.0;
     if (p->sd_free)
         start_v(p, w);
+    first_box(q, p, r, w, &box);
     for (int pass = 0; pass < PASSES; pass++) {
         place_nodes(q, &box, &w->pt);
         w->pt.same_shapes = false;
@@ -437,8 +492,10 @@ void proposal_build(struct proposal *q, const struct problem *p, const struct co
         if (p->sd_free && !q->v_from_prior)
             restart_v(w, node_count(q));
     }
-    for (size_t d = 0; d < q->dims; d++)
-        q->at_zero[d] = p->reflect[d] && q->low[d] == 0.0;
+    for (size_t d = 0; d < q->dims; d++) {
+        q->folds_low[d] = q->low[d] <= p->edge_low[d];
+        q->folds_high[d] = q->high[d] >= p->edge_high[d];
+    }
     fill_cells(q, p, w);
     fill_picking(q);
     for (size_t d = 0; d < q->dims; d++) {
@@ -446,6 +503,7 @@ void proposal_build(struct proposal *q, const struct problem *p, const struct co
         memcpy(q->node[d], w->pt.coord[d], node_count(q) * sizeof *q->node[d]);
     }
     q->mode_v = w->mode[q->best];
+    q->heavy_tails = p->weighed;
     if (p->binary)
         keep_pseudo(q, p, w);
 }

@@ -32,7 +32,10 @@ struct cell {
 struct proposal {
     size_t dims, nodes[SHAPES_MAX];
     double low[SHAPES_MAX], step[SHAPES_MAX], inverse_step[SHAPES_MAX];
-    bool at_zero[SHAPES_MAX]; /* the first node stands on the reflecting 0 */
+    double high[SHAPES_MAX]; /* the last node */
+    bool folds_low[SHAPES_MAX],
+        folds_high[SHAPES_MAX]; /* the first or last node stands on an end of the support, where its
+                                   tent is folded back */
     struct cell
         cell[CELLS_MAX];  /* [(i1 + 1) * (nodes[1] + 2) + i2 + 1]; one column where dims < 2 */
     double density_scale; /* grid density = interpolated weight * density_scale */
@@ -40,7 +43,8 @@ struct proposal {
     double cumulative[NODES_MAX];       /* of picking probabilities, last = 1 */
     unsigned char guide[GUIDE];         /* first node whose cumulative exceeds g / GUIDE */
     bool v_from_prior;                  /* fewer than two residual degrees of freedom */
-    bool heavy_tails;                /* binary: a level without events or with only events: t(24) */
+    bool heavy_tails; /* t(24) for the level means: a binary level without events or with only
+                         events, or a linear prior that is not normal */
     double mode[SHAPES_MAX], mode_v; /* best node */
     size_t best;
     double *pseudo_y, *pseudo_w; /* binary, owned: [node][level] */

@@ -10,7 +10,7 @@
 
 /* Axes at most; log units below the maximum that belong to the box; passes of the zoom; reach of
  * the standard normals of a binary endpoint. */
-enum { AXES_MAX = 3, PASSES = 8 };
+enum { AXES_MAX = 3, PASSES = 8, REACH = 4, V_REACH = 20 };
 #define KEEP 18.0
 #define NORMAL_REACH 9.0
 
@@ -33,7 +33,7 @@ struct grid {
 
 static size_t axis_count(const struct problem *p)
 {
-    return p->dims + (p->sd_free ? 1 : 0) + (p->binary ? problem_normal_rows(p) : 0);
+    return p->dims + (p->sd_free ? 1 : 0) + (problem_draws_first(p) ? problem_normal_rows(p) : 0);
 }
 
 bool quadrature_reaches(const struct problem *p)
@@ -80,33 +80,51 @@ static double cube_root(double x)
     return x > 0.0 ? vm_exp(vm_log(x) / 3.0) : 0.0;
 }
 
-/* A coordinate that reflects at 0 runs as c = t^3: cells are small where such posteriors are steep.
+static double least(double a, double b)
+{
+    return a < b ? a : b;
+}
+
+static double most(double a, double b)
+{
+    return a > b ? a : b;
+}
+
+/* A coordinate runs over its prior's range; a heavy-tailed one around the proposal's box (the zoom
+ * widens it where an edge holds mass). One that reflects at 0 runs as c = t^3: cells are small
+ * where such posteriors are steep.
  */
 static struct axis shape_axis(const struct problem *p, const struct proposal *q, size_t d,
                               const struct coordinate_range *r)
 {
-    const double top = q->low[d] + q->step[d] * (double)q->nodes[d];
-    const double high = top > r->high[d] ? top : r->high[d];
+    const double ceiling = p->edge_high[d], width = q->step[d] * (double)q->nodes[d];
+    const double high =
+        p->heavy[d] ? q->high[d] + REACH * width : most(q->high[d] + q->step[d], r->high[d]);
     if (p->reflect[d])
-        return (struct axis){0.0, cube_root(high), 0.0, cube_root(2.0 * high)};
-    const double low = q->low[d] - q->step[d] < r->low[d] ? q->low[d] - q->step[d] : r->low[d];
-    const double room = high - low;
-    return (struct axis){low, high, low - room, high + room};
+        return (struct axis){0.0, cube_root(least(high, ceiling)), 0.0,
+                             cube_root(least(2.0 * high, ceiling))};
+    const double low =
+        p->heavy[d] ? q->low[d] - REACH * width : least(q->low[d] - q->step[d], r->low[d]);
+    const double room = high - low, floor = p->edge_low[d];
+    return (struct axis){most(low, floor), least(high, ceiling), most(low - room, floor),
+                         least(high + room, ceiling)};
 }
 
 /* The prior's range, and where the proposal saw the likelihood, however far apart they are. */
-static struct axis v_axis(const struct proposal *q, const struct coordinate_range *r)
+static struct axis v_axis(const struct problem *p, const struct proposal *q,
+                          const struct coordinate_range *r)
 {
-    enum { REACH = 20 };
     const size_t columns = q->nodes[1] + 2;
     const struct cell *c =
         q->cell + (q->best / q->nodes[1] + 1) * columns + q->best % q->nodes[1] + 1;
     double low = r->v_low, high = r->v_high;
     if (!q->v_from_prior) {
-        low = c->mode - REACH * c->scale < low ? c->mode - REACH * c->scale : low;
-        high = c->mode + REACH * c->scale > high ? c->mode + REACH * c->scale : high;
+        low = least(low, c->mode - V_REACH * c->scale);
+        high = most(high, c->mode + V_REACH * c->scale);
     }
-    return (struct axis){low, high, low - (high - low), high + (high - low)};
+    const double floor = p->v_edge_low, ceiling = p->v_edge_high, room = high - low;
+    return (struct axis){most(low, floor), least(high, ceiling), most(low - room, floor),
+                         least(high + room, ceiling)};
 }
 
 static void grid_axes(struct grid *g, const struct proposal *q, const struct coordinate_range *r)
@@ -116,7 +134,7 @@ static void grid_axes(struct grid *g, const struct proposal *q, const struct coo
     for (size_t d = 0; d < p->dims; d++)
         g->axis[a++] = shape_axis(p, q, d, r);
     if (p->sd_free)
-        g->axis[a++] = v_axis(q, r);
+        g->axis[a++] = v_axis(p, q, r);
     while (a < g->axes)
         g->axis[a++] = (struct axis){-NORMAL_REACH, NORMAL_REACH, -NORMAL_REACH, NORMAL_REACH};
 }
@@ -127,9 +145,9 @@ static double *axis_values(struct grid *g, size_t a)
     const struct problem *p = g->p;
     if (a < p->dims)
         return g->pt.coord[a];
-    if (p->sd_free)
+    if (p->sd_free && a == p->dims)
         return g->pt.v;
-    return g->normal + (a - p->dims) * BLOCK;
+    return g->normal + (a - p->dims - (p->sd_free ? 1 : 0)) * BLOCK;
 }
 
 static double cell_width(const struct grid *g, size_t a)
@@ -178,12 +196,17 @@ static void evaluate(struct grid *g)
     density_at(p, &g->pt);
     for (size_t i = 0; i < BLOCK; i++)
         g->value[i] = g->pt.log_prior[i] + g->pt.log_m[i] + jacobian[i];
+    if (problem_draws_first(p)) {
+        p->marginal->draw(p, BLOCK, g->pt.x, g->pt.factor, g->normal, g->theta, g->beta);
+        density_correction(p, BLOCK, g->theta, g->beta, g->value);
+    }
     if (p->binary) {
         const struct observations o = {NULL, g->y, g->w};
-        p->marginal->draw(p, BLOCK, g->pt.x, g->pt.factor, g->normal, g->theta, g->beta);
         p->marginal->binomial(p, BLOCK, g->theta, &o, g->extra, g->response);
         for (size_t i = 0; i < BLOCK; i++)
             g->value[i] += g->extra[i];
+    }
+    if (problem_draws_first(p)) {
         for (size_t r = 0; r < problem_normal_rows(p); r++)
             for (size_t i = 0; i < BLOCK; i++)
                 g->value[i] -= 0.5 * g->normal[r * BLOCK + i] * g->normal[r * BLOCK + i];
@@ -279,7 +302,7 @@ static void write_block(struct grid *g, const struct draw_rows *out, size_t at)
     const struct problem *p = g->p;
     place_reflecting(g, NULL);
     density_at(p, &g->pt);
-    if (!p->binary) {
+    if (!problem_draws_first(p)) {
         p->kernel->normals(&g->rng, (problem_normal_rows(p)) * BLOCK, g->normal);
         if (out->response_mean)
             p->marginal->moments(p, BLOCK, g->pt.x, g->pt.factor, out->stride,

@@ -34,7 +34,7 @@ static void list_state(struct sampler *s)
     list_rows(s, s->pt.shape[0], 1);
     list_rows(s, s->pt.shape[1], 1);
     list_rows(s, s->pt.sd, 1);
-    if (p->binary) {
+    if (problem_draws_first(p)) {
         list_rows(s, s->theta, p->levels);
         list_rows(s, s->response, p->levels);
         list_rows(s, s->beta, COLUMNS_MAX);
@@ -120,19 +120,16 @@ static void propose_shapes(struct sampler *s)
         double *c = s->pt.coord[d];
         for (size_t i = 0; i < BLOCK; i++)
             c[i] = q->node[d][node[i]] + q->step[d] * (a[i] + b[i] - 1.0);
-        for (size_t i = 0; s->p->reflect[d] && i < BLOCK; i++)
-            c[i] = c[i] < 0.0 ? -c[i] : c[i];
+        for (size_t i = 0; q->folds_low[d] && i < BLOCK; i++)
+            c[i] = c[i] < q->low[d] ? 2.0 * q->low[d] - c[i] : c[i];
+        for (size_t i = 0; q->folds_high[d] && i < BLOCK; i++)
+            c[i] = c[i] > q->high[d] ? 2.0 * q->high[d] - c[i] : c[i];
     }
-}
-
-static double coordinate_of(const struct problem *p, size_t dim, double natural)
-{
-    return p->coordinate[p->dim_shape[dim]] == COORDINATE_LOG ? vm_log(natural) : natural;
 }
 
 static bool from_prior(const struct sampler *s, size_t i)
 {
-    return s->uniform_mix[i] < 1.0 / PRIOR_EVERY;
+    return s->uniform_mix[i] < s->p->prior_share;
 }
 
 static void propose_shapes_from_prior(struct sampler *s)
@@ -142,9 +139,7 @@ static void propose_shapes_from_prior(struct sampler *s)
         if (!from_prior(s, i))
             continue;
         for (size_t d = 0; d < p->dims && d < SHAPES_MAX; d++)
-            s->pt.coord[d][i] = coordinate_of(
-                p, d,
-                prior_quantile(p->shape_prior[p->dim_shape[d]], s->uniform[JITTER_A0 + 2 * d][i]));
+            s->pt.coord[d][i] = problem_coordinate(p, d, s->uniform[JITTER_A0 + 2 * d][i]);
     }
 }
 
@@ -157,7 +152,7 @@ static void propose_v(struct sampler *s, const double *mode, const double *scale
         p->kernel->propose_v(BLOCK, s->uniform_v, mode, scale, s->pt.v);
     for (size_t i = 0; i < BLOCK; i++)
         if (s->q->v_from_prior || from_prior(s, i))
-            s->pt.v[i] = vm_log(prior_quantile(p->sd_prior, s->uniform_v[i]));
+            s->pt.v[i] = problem_log_quantile(p->sd_prior, s->uniform_v[i]);
 }
 
 /* log q of the mixture of grid and prior at the block's points; density: of the grid */
@@ -175,7 +170,7 @@ static void log_proposal(struct sampler *s, double *density, const double *mode,
         for (size_t i = 0; i < BLOCK; i++)
             density[i] *= prior_v[i];
     }
-    p->kernel->log_mixture(BLOCK, density, s->pt.log_prior, out);
+    p->kernel->log_mixture(BLOCK, density, s->pt.log_prior, p->prior_share, out);
 }
 
 /* The pseudo-data of the node nearest to each point. */
@@ -230,8 +225,9 @@ static void heavy_tails(struct sampler *s, double *out)
         out[i] = -0.5 * squares[i] + 0.5 * (double)(TAIL_DF + rows) * product[i];
 }
 
-/* Binary: level logits from the pseudo-data's Gaussian; adds exact : pseudo to the log weights. */
-static void weigh_binary(struct sampler *s)
+/* Level means from the proposal's Gaussian (binary: of the pseudo-data); adds exact : proposed to
+ * the log weights. */
+static void weigh_linear(struct sampler *s)
 {
     const struct problem *p = s->p;
     double *correction = s->scratch + BLOCK;
@@ -240,10 +236,15 @@ static void weigh_binary(struct sampler *s)
     if (s->q->heavy_tails)
         heavy_tails(s, correction);
     p->marginal->draw(p, BLOCK, s->pt.x, s->pt.factor, s->normal, s->theta, s->beta);
-    const struct observations o = {NULL, s->pseudo_y, s->pseudo_w};
-    p->marginal->binomial(p, BLOCK, s->theta, &o, s->scratch, s->response);
+    density_correction(p, BLOCK, s->theta, s->beta, correction);
+    if (p->binary) {
+        const struct observations o = {NULL, s->pseudo_y, s->pseudo_w};
+        p->marginal->binomial(p, BLOCK, s->theta, &o, s->scratch, s->response);
+        for (size_t i = 0; i < BLOCK; i++)
+            correction[i] += s->scratch[i];
+    }
     for (size_t i = 0; i < BLOCK; i++)
-        s->log_weight[i] += s->scratch[i] + correction[i];
+        s->log_weight[i] += correction[i];
 }
 
 static void propose(struct sampler *s)
@@ -264,8 +265,8 @@ static void propose(struct sampler *s)
     log_proposal(s, density, mode, scale, s->log_weight);
     for (size_t i = 0; i < BLOCK; i++)
         s->log_weight[i] = s->pt.log_prior[i] + s->pt.log_m[i] - s->log_weight[i];
-    if (p->binary)
-        weigh_binary(s);
+    if (problem_draws_first(p))
+        weigh_linear(s);
     for (size_t i = 0; i < BLOCK; i++) /* an impossible point is never taken */
         if (!(s->log_weight[i] < INFINITY))
             s->log_weight[i] = -INFINITY;
@@ -309,19 +310,29 @@ void sampler_parameters(const struct problem *p, size_t n, const double *shape0,
                         const double *shape1, const double *sd, const double *beta,
                         const double *theta, const struct draw_rows *out, size_t at)
 {
-    size_t row = 0, linear = 0, shape = 0;
+    const double *first = theta + p->order[0] * n, *second = theta + p->order[1] * n;
+    double *to = out->parameter + at;
+    size_t linear = 0, shape = 0;
     for (const struct parameter *a = p->curve->parameters; a->name; a++) {
-        if (a->order > 1)
+        if (a->order > 1 && !p->second_order)
             continue;
-        const double *from = p->chain ? theta : beta + linear * n;
         if (a->role == ROLE_SHAPE)
-            from = shape++ == 0 ? shape0 : shape1;
+            memcpy(to, shape++ == 0 ? shape0 : shape1, n * sizeof *to);
+        else if (p->chain && linear++ == 0)
+            memcpy(to, first, n * sizeof *to);
+        else if (!p->chain)
+            memcpy(to, beta + linear++ * n, n * sizeof *to);
         else
-            linear++;
-        memcpy(out->parameter + row++ * out->stride + at, from, n * sizeof *from);
+            for (size_t i = 0; i < n; i++) /* the first step of the walk */
+                to[i] = second[i] - first[i];
+        to += out->stride;
+    }
+    if (p->control >= 0) {
+        memcpy(to, theta + (size_t)p->control * n, n * sizeof *to);
+        to += out->stride;
     }
     if (!p->binary)
-        memcpy(out->parameter + row * out->stride + at, sd, n * sizeof *sd);
+        memcpy(to, sd, n * sizeof *sd);
 }
 
 static void copy_rows(double *to, size_t stride, size_t at, const double *from, size_t rows)
@@ -336,7 +347,7 @@ static void draw_accepted(struct sampler *s, const struct draw_rows *out, size_t
     const double *shape0 = s->accepted, *shape1 = shape0 + BLOCK, *sd = shape1 + BLOCK;
     const double *rest = sd + BLOCK;
     const double *theta = rest, *beta = rest + 2 * p->levels * BLOCK;
-    if (!p->binary) {
+    if (!problem_draws_first(p)) {
         const double *factor = rest, *x = rest + problem_factor_rows(p) * BLOCK;
         p->kernel->normals(&s->rng, problem_normal_rows(p) * BLOCK, s->normal);
         p->marginal->draw(p, BLOCK, x, factor, s->normal, s->theta, s->beta);

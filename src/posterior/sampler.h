@@ -15,7 +15,7 @@
 #include "posterior/density.h"
 #include "posterior/proposal.h"
 
-enum { BLOCK = 64, BLOCK_STEPS = BLOCK / RNG_LANES, PRIOR_EVERY = 64, TAIL_DF = 24 };
+enum { BLOCK = 64, BLOCK_STEPS = BLOCK / RNG_LANES, TAIL_DF = 24 };
 
 /* Where the draws of a block go: row r of an array at r * stride. NULL: not wanted. */
 struct draw_rows {
@@ -67,7 +67,8 @@ struct sampler_kernel {
                       double *v);
     void (*logistic_density)(size_t n, const double *v, const double *mode, const double *scale,
                              double *density);
-    void (*log_mixture)(size_t n, const double *density, const double *log_prior, double *out);
+    void (*log_mixture)(size_t n, const double *density, const double *log_prior, double share,
+                        double *out);
     /* scratch: 1 where the proposal is taken; moves `state` and fills `accepted` */
     void (*accept)(struct sampler *s);
 };

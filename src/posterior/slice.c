@@ -60,11 +60,13 @@ static void evaluate(struct slice *s, const double *normals, double *out)
     const struct problem *p = &s->p;
     double extra[N] = {0};
     density_at(p, &s->pt);
+    if (problem_draws_first(p))
+        p->marginal->draw(p, N, s->pt.x, s->pt.factor, normals, s->theta, s->beta);
     if (p->binary) {
         const struct observations o = {NULL, s->y, s->w};
-        p->marginal->draw(p, N, s->pt.x, s->pt.factor, normals, s->theta, s->beta);
         p->marginal->binomial(p, N, s->theta, &o, extra, s->response);
     }
+    density_correction(p, N, s->theta, s->beta, extra);
     for (size_t i = 0; i < N; i++) {
         out[i] = s->pt.log_prior[i] + s->pt.log_m[i] + extra[i];
         if (!(out[i] < INFINITY))
@@ -207,7 +209,7 @@ static void sweep(struct slice *s)
         update_coordinate(s, s->pt.coord[d], s->width[d]);
     if (s->p.sd_free)
         update_coordinate(s, s->pt.v, s->width_v);
-    if (s->p.binary)
+    if (problem_draws_first(&s->p))
         update_normals(s);
 }
 
@@ -260,7 +262,7 @@ void slice_sweep(struct slice *s, const struct draw_rows *out, size_t at)
     double value[N];
     sweep(s);
     evaluate(s, s->eps, value); /* everything at the state itself */
-    if (!p->binary) {
+    if (!problem_draws_first(p)) {
         p->kernel->normals(&s->rng, (problem_normal_rows(p) + 1) / 2 * 2 * N, s->nu);
         p->marginal->draw(p, N, s->pt.x, s->pt.factor, s->nu, s->theta, s->beta);
         if (out->response_mean)
@@ -268,9 +270,9 @@ void slice_sweep(struct slice *s, const struct draw_rows *out, size_t at)
                                  out->response_sd + at,
                                  out->difference_mean ? out->difference_mean + at : NULL,
                                  out->difference_sd ? out->difference_sd + at : NULL);
-    } else {
-        put_rows(out->response, out->stride, at, s->response, p->levels);
     }
+    if (p->binary)
+        put_rows(out->response, out->stride, at, s->response, p->levels);
     put_rows(out->link, out->stride, at, s->theta, p->levels);
     sampler_parameters(p, N, s->pt.shape[0], s->pt.shape[1], s->pt.sd, s->beta, s->theta, out, at);
 }
