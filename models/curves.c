@@ -1,12 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* curves.c: the one list of curves, and what several of them share. */
+/* curves.c: the list of curves as the program walks it, and what several of them share. */
 #include "models/curves.h"
 
 #include "base/vecmath.h"
 
-const struct curve *const curves[] = {&curve_linear, &curve_log_linear,   &curve_quadratic,
-                                      &curve_emax,   &curve_sigmoid_emax, &curve_logistic,
-                                      &curve_ndlm,   &curve_independent,  NULL};
+#define CURVE_ADDRESS(NAME) &curve_##NAME,
+const struct curve *const curves[] = {CURVE_LIST(CURVE_ADDRESS) NULL};
 
 double lowest_level(const struct curve_levels *levels)
 {

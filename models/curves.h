@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* curves.h: the curves by name, and what several of them share. */
+/* curves.h: the one list of curves, and what several of them share. */
 #ifndef TERRACE_MODELS_CURVES_H
 #define TERRACE_MODELS_CURVES_H
 
@@ -8,8 +8,20 @@
 
 #include "design/curve.h"
 
-extern const struct curve curve_linear, curve_log_linear, curve_quadratic, curve_emax,
-    curve_sigmoid_emax, curve_logistic, curve_ndlm, curve_independent;
+/* The one list: NAME stands for the curve_NAME of models/NAME.c. A new curve is a file and a row.
+ */
+#define CURVE_LIST(ROW) \
+    ROW(linear)         \
+    ROW(log_linear)     \
+    ROW(quadratic)      \
+    ROW(emax)           \
+    ROW(sigmoid_emax)   \
+    ROW(logistic)       \
+    ROW(ndlm)           \
+    ROW(independent)
+
+#define CURVE_DECLARE(NAME) extern const struct curve curve_##NAME;
+CURVE_LIST(CURVE_DECLARE)
 
 /* Rows of a list of parameters. ORDER: 0, or 2 for a parameter that only order 2 has. */
 #define COEFFICIENT_OF(ORDER, NAME, HELP)                                                 \

@@ -84,7 +84,7 @@ struct curve {
                   double *x);
 };
 
-extern const struct curve *const curves[]; /* NULL-terminated; the only list (models/curves.c) */
+extern const struct curve *const curves[]; /* NULL-terminated; the only list (models/curves.h) */
 
 const struct curve *curve_find(const char *key);
 size_t
