@@ -17,6 +17,7 @@
     ROW(emax)           \
     ROW(sigmoid_emax)   \
     ROW(logistic)       \
+    ROW(exponential)    \
     ROW(ndlm)           \
     ROW(independent)
 

@@ -42,6 +42,9 @@ static const struct expected_prior {
     {"logistic", "Emax", "normal", {0, 5}, true, 1},
     {"logistic", "ED50", "normal", {40, 40}, false, 1},
     {"logistic", "spread", "lognormal", {2.07944154, 0.75}, false, 1}, /* ln 8 */
+    {"exponential", "E0", "normal", {0.5, 5}, true, 1},
+    {"exponential", "rise", "normal", {0, 2.5}, true, 1},
+    {"exponential", "scale", "lognormal", {4.38202663, 0.5}, false, 1}, /* ln 80 */
     {"ndlm", "theta", "normal", {0.5, 5}, true, 1},
     {"ndlm", "drift_sd", "half_normal", {2.23606798}, true, 1}, /* 5 / sqrt 5 */
     {"ndlm", "theta", "normal", {0.5, 5}, true, 2},

@@ -54,6 +54,12 @@ static double logistic_at(double d, const double *v, double largest)
     return v[0] + v[1] / (1 + exp((v[2] - d) / v[3]));
 }
 
+static double exponential_at(double d, const double *v, double largest)
+{
+    (void)largest;
+    return v[0] + v[1] * expm1(fmin(d / v[2], 300)); /* kept finite there */
+}
+
 /* What the interface says of each curve. */
 static const struct known {
     const char *key;
@@ -70,6 +76,7 @@ static const struct known {
     {"emax", "LLS", "nny", "E0 Emax ED50", true, emax_at, {-1, -2.4, 8}},
     {"sigmoid_emax", "LLSS", "nnyy", "E0 Emax ED50 h", true, sigmoid_at, {-1, 3, 12, 2.5}},
     {"logistic", "LLSS", "nnny", "E0 Emax ED50 spread", true, logistic_at, {0.5, 2, -15, 9}},
+    {"exponential", "LLS", "nny", "E0 rise scale", true, exponential_at, {-1, 0.7, 40}},
     {"ndlm", "LLS", "nny", "theta slope drift_sd", false, NULL, {0}},
     {"independent", "L", "n", "theta", false, NULL, {0}},
 };
@@ -280,9 +287,10 @@ static void levels_that_suit(void)
     static const struct {
         const char *curve, *suits; /* y or n for each pair of values */
     } want[] = {
-        {"linear", "yyyyyy"},    {"log_linear", "yynnnn"}, /* shift 1 */
-        {"quadratic", "yyynny"}, {"emax", "yynnnn"},       {"sigmoid_emax", "yynnnn"},
-        {"logistic", "yyyyyy"},  {"ndlm", "yyyyyy"},       {"independent", "yyyyyy"},
+        {"linear", "yyyyyy"},      {"log_linear", "yynnnn"}, /* shift 1 */
+        {"quadratic", "yyynny"},   {"emax", "yynnnn"},       {"sigmoid_emax", "yynnnn"},
+        {"logistic", "yyyyyy"},    {"ndlm", "yyyyyy"},       {"independent", "yyyyyy"},
+        {"exponential", "yyyyyy"},
     };
 
     for (size_t i = 0; i < COUNT_OF(want); i++)
