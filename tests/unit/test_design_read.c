@@ -306,7 +306,7 @@ static void analysable(void)
     CU_ASSERT_EQUAL(e.count, 0);
     d = read_good("off_curve");
     CU_ASSERT_EQUAL(design_check_analysable(d, &e), STATUS_INPUT);
-    CU_ASSERT_EQUAL(e.count, 8); /* 4 families, 3 cuts, sensitivity */
+    CU_ASSERT_EQUAL(e.count, 7); /* 3 families, 3 cuts, sensitivity */
     design_free(d);
     err_release(&e);
 }
