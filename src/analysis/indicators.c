@@ -14,19 +14,29 @@ struct trace {
     int *level;  /* [draw] */
 };
 
+static void mark_draws(const struct judgement *j, const int *found, int level, double *mark)
+{
+    for (size_t i = 0; i < j->draws.n; i++)
+        mark[i] = found[i] == level ? 1 : 0;
+}
+
 static void mark_level(const struct trace *x, int level, double *mark)
 {
-    for (size_t i = 0; i < x->j->draws.n; i++)
-        mark[i] = x->level[i] == level ? 1 : 0;
+    mark_draws(x->j, x->level, level, mark);
+}
+
+static void mark_bars(const struct judgement *j, size_t target, const double *bar, size_t level,
+                      double *mark)
+{
+    const double s = design_sign(j->d);
+    const double *m = judge_row(j, level, j->d->target[target].link);
+    for (size_t i = 0; i < j->draws.n; i++)
+        mark[i] = s * m[i] >= bar[i] ? 1 : 0;
 }
 
 static void mark_meets(const struct trace *x, size_t level, double *mark)
 {
-    const bool link = x->j->d->target[x->target].link;
-    const double s = design_sign(x->j->d);
-    const double *m = judge_row(x->j, level, link);
-    for (size_t i = 0; i < x->j->draws.n; i++)
-        mark[i] = s * m[i] >= x->bar[i] ? 1 : 0;
+    mark_bars(x->j, x->target, x->bar, level, mark);
 }
 
 /* A share of 0 or 1 has a constant indicator: every draw counts. */
@@ -121,4 +131,24 @@ void indicator_errors(struct judgement *j, size_t target)
             run_job(&x, job);
     mem_free(x.bar);
     mem_free(x.level);
+}
+
+double indicator_target_error(const struct judgement *j, size_t target, size_t level)
+{
+    const size_t at = target * j->d->levels + level;
+    if (!judge_is_grouped(j))
+        return j->mcse_target[at];
+    tally_trace(j->tally, &j->draws, j->open, target, j->bar, j->found);
+    mark_draws(j, j->found, (int)level, j->work);
+    return judge_mcse_share(j, j->work, j->pr_target[at]);
+}
+
+double indicator_meets_error(const struct judgement *j, size_t target, size_t level)
+{
+    const size_t at = target * j->d->levels + level;
+    if (!judge_is_grouped(j))
+        return j->mcse_meets[at];
+    tally_trace(j->tally, &j->draws, j->open, target, j->bar, j->found);
+    mark_bars(j, target, j->bar, level, j->work);
+    return judge_mcse_share(j, j->work, j->pr_meets[at]);
 }

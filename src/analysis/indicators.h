@@ -11,4 +11,9 @@
  * shares are counted. */
 void indicator_errors(struct judgement *j, size_t target);
 
+/* Standard errors of pr_target and pr_meets of one level. Of grouped draws those in the judgement
+ * count points alone, which is never too small; here they come from the draws themselves. */
+double indicator_target_error(const struct judgement *j, size_t target, size_t level);
+double indicator_meets_error(const struct judgement *j, size_t target, size_t level);
+
 #endif

@@ -40,7 +40,8 @@ void judgement_free(struct judgement *j)
         return;
     void *owned[] = {j->open,       j->pr_target,   j->pr_meets,      j->mcse_target, j->mcse_meets,
                      j->ess_target, j->pr_none,     j->mcse_none,     j->ess_none,    j->selected,
-                     j->close,      j->pr_positive, j->mcse_positive, j->work,        j->level};
+                     j->close,      j->pr_positive, j->mcse_positive, j->work,        j->level,
+                     j->bar,        j->found};
     for (size_t i = 0; i < sizeof owned / sizeof *owned; i++)
         mem_free(owned[i]);
     tally_free(j->tally);
@@ -58,6 +59,8 @@ static void make_room(struct judgement *j, size_t n)
     if (n <= j->room)
         return;
     j->work = mem_grow(j->work, n, sizeof *j->work);
+    j->bar = mem_grow(j->bar, n, sizeof *j->bar);
+    j->found = mem_grow(j->found, n, sizeof *j->found);
     j->room = n;
 }
 
@@ -66,24 +69,54 @@ static void make_room(struct judgement *j, size_t n)
 double judge_ess(const struct judgement *j, const double *x)
 {
     if (!j->by_ess)
-        return j->share * (double)j->draws.n;
+        return j->share * (double)j->draws.points; /* grouped: at least so many */
     return diag_ess(x, j->draws.n, j->draws.chains);
+}
+
+bool judge_is_grouped(const struct judgement *j)
+{
+    return j->draws.points < j->draws.n;
+}
+
+/* Grouped draws: the standard error from the averages of SLICES consecutive stretches of points,
+ * which are independent. x: n values, a point's at i, i + points, ... */
+static double error_by_slices(const struct judgement *j, const double *x, size_t n, double mean)
+{
+    enum { SLICES = 16 };
+    const size_t points = j->draws.points;
+    double squares = 0;
+    for (size_t s = 0; s < SLICES; s++) {
+        const size_t first = s * points / SLICES, end = (s + 1) * points / SLICES;
+        double sum = 0;
+        for (size_t row = 0; row < n; row += points)
+            for (size_t i = first; i < end; i++)
+                sum += x[row + i];
+        const double off = sum / (double)((end - first) * (n / points)) - mean;
+        squares += off * off;
+    }
+    return sqrt(squares / (SLICES * (SLICES - 1)));
 }
 
 double judge_mcse_share(const struct judgement *j, const double *x, double p)
 {
-    return diag_mcse_probability(p, judge_ess(j, x));
+    if (!judge_is_grouped(j))
+        return diag_mcse_probability(p, judge_ess(j, x));
+    /* 0 and 1 are never exact */
+    const double least = diag_mcse_probability(0, (double)j->draws.points);
+    return fmax(least, error_by_slices(j, x, j->draws.n, p));
 }
 
-double judge_mcse_mean(const struct judgement *j, const double *x, double mean)
+double judge_mcse_mean(const struct judgement *j, const double *x, size_t n, double mean)
 {
-    return diag_sd(x, j->draws.n, mean) / sqrt(judge_ess(j, x));
+    if (judge_is_grouped(j))
+        return error_by_slices(j, x, n, mean);
+    return diag_sd(x, n, mean) / sqrt(judge_ess(j, x));
 }
 
 static void errors_of_share(struct judgement *j)
 {
     const size_t cells = j->d->targets * j->d->levels;
-    const double ess = j->share * (double)j->draws.n;
+    const double ess = j->share * (double)j->draws.points;
     for (size_t i = 0; i < cells; i++) {
         j->ess_target[i] = ess;
         j->mcse_target[i] = diag_mcse_probability(j->pr_target[i], ess);

@@ -33,8 +33,10 @@ struct judgement {
 
     struct tally *tally;
     double *work; /* one value a draw, for measures */
-    size_t room;  /* draws that fit into work */
-    int *level;   /* evaluations note here the level they looked at, or LEVEL_NONE */
+    double *bar;  /* one value a draw each: a target's trace of grouped draws */
+    int *found;
+    size_t room; /* draws that fit into work */
+    int *level;  /* evaluations note here the level they looked at, or LEVEL_NONE */
 };
 
 struct judgement *judgement_new(const struct design *d);
@@ -51,9 +53,13 @@ void judge_selection(struct judgement *j);
 
 /* Effective draws behind an average over the draws of x (by_ess or not). */
 double judge_ess(const struct judgement *j, const double *x);
-/* Monte Carlo standard error of a share p of draws, x the indicator; of an average of x. */
+/* Grouped draws (posterior.h): several share a point. */
+bool judge_is_grouped(const struct judgement *j);
+
+/* Monte Carlo standard error of a share p of draws, x the indicator; of an average of x[n], one
+ * value a draw or (grouped draws) a point. */
 double judge_mcse_share(const struct judgement *j, const double *x, double p);
-double judge_mcse_mean(const struct judgement *j, const double *x, double mean);
+double judge_mcse_mean(const struct judgement *j, const double *x, size_t n, double mean);
 
 /* Response (link or response scale) of a level, one value a draw. */
 const double *judge_row(const struct judgement *j, size_t level, bool link);

@@ -4,6 +4,7 @@
 
 #include <math.h>
 
+#include "analysis/indicators.h"
 #include "analysis/row_words.h"
 #include "analysis/targets.h"
 #include "base/vecmath.h"
@@ -25,7 +26,7 @@ static void exact_share(const struct judgement *j, const double *mean, const dou
                         double *value, double *mcse)
 {
     const double s = design_sign(j->d);
-    const size_t n = j->draws.n;
+    const size_t n = j->draws.points;
     double *x = j->work;
     for (size_t i = 0; i < n; i++) {
         const double over = s * mean[i] - bar;
@@ -34,7 +35,7 @@ static void exact_share(const struct judgement *j, const double *mean, const dou
     }
     vecmath()->normal_cdf(n, x, x);
     *value = diag_mean(x, n);
-    *mcse = judge_mcse_mean(j, x, *value);
+    *mcse = judge_mcse_mean(j, x, n, *value);
 }
 
 /* Share of the draws on which s (m - reference) > bar; reference NULL: `number`. */
@@ -228,7 +229,7 @@ static void pr_level_evaluate(const struct condition *c, const struct judgement 
         return;
     const size_t at = (size_t)c->target * j->d->levels + (size_t)*j->level;
     *value = j->pr_target[at];
-    *mcse = j->mcse_target[at];
+    *mcse = indicator_target_error(j, (size_t)c->target, (size_t)*j->level);
 }
 
 static void pr_level_sentence(const struct condition *c, const struct design *d, struct text *out)
@@ -251,7 +252,7 @@ static void pr_meets_evaluate(const struct condition *c, const struct judgement 
         return;
     const size_t at = (size_t)c->target * j->d->levels + (size_t)*j->level;
     *value = j->pr_meets[at];
-    *mcse = j->mcse_meets[at];
+    *mcse = indicator_meets_error(j, (size_t)c->target, (size_t)*j->level);
 }
 
 static void pr_meets_sentence(const struct condition *c, const struct design *d, struct text *out)

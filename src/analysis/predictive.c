@@ -72,7 +72,7 @@ static void predictive_evaluate(const struct condition *c, const struct judgemen
         x[i] -= z;
     vecmath()->normal_cdf(j->draws.n, x, x);
     *value = diag_mean(x, j->draws.n);
-    *mcse = judge_mcse_mean(j, x, *value);
+    *mcse = judge_mcse_mean(j, x, j->draws.n, *value);
 }
 
 static void predictive_sentence(const struct condition *c, const struct design *d, struct text *out)

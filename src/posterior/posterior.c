@@ -8,6 +8,7 @@
 #include "base/mem.h"
 #include "base/vecmath.h"
 #include "posterior/diagnostics.h"
+#include "posterior/grouped.h"
 #include "posterior/plan.h"
 #include "posterior/prior_draws.h"
 #include "posterior/quadrature.h"
@@ -36,6 +37,8 @@ struct posterior {
     struct sampler sampler;
     struct slice *slice;
     bool use_slice;
+    struct grouped *grouped;
+    size_t points; /* of the grouped draws at hand; 0: none */
     struct store first, second;
 };
 
@@ -66,6 +69,7 @@ void posterior_free(struct posterior *p)
     store_release(&p->first);
     store_release(&p->second);
     slice_free(p->slice);
+    grouped_free(p->grouped);
     sampler_release(&p->sampler);
     proposal_release(&p->proposal);
     proposal_work_free(p->work);
@@ -111,6 +115,7 @@ static struct draw_rows store_rows(const struct store *s)
 static struct draws store_draws(const struct store *s, const struct posterior *p, size_t chains)
 {
     return (struct draws){.n = s->total,
+                          .points = s->total,
                           .stride = s->capacity,
                           .chains = chains,
                           .levels = p->problem.levels,
@@ -154,6 +159,7 @@ enum status posterior_start(struct posterior *p, const struct level_data *data, 
                        "improper: give sd a prior that vanishes at 0 or a lower bound");
     p->key = key;
     p->use_slice = false;
+    p->points = 0;
     p->first.made = p->first.total = 0;
     proposal_build(&p->proposal, &p->problem, &p->plan->range, p->work);
     p->key.purpose = RNG_SAMPLER;
@@ -202,7 +208,10 @@ bool posterior_is_slice(const struct posterior *p)
 
 struct draws posterior_draws(const struct posterior *p)
 {
-    return store_draws(&p->first, p, CHAINS);
+    struct draws d = store_draws(&p->first, p, CHAINS);
+    if (p->points > 0)
+        d.points = p->points;
+    return d;
 }
 
 static double sampler_kish(const struct sampler *s)
@@ -233,11 +242,34 @@ static double least_ess(const struct posterior *p)
     return least;
 }
 
+/* false: the proposal does not fit well enough; the chains start afresh */
+static bool run_grouped(struct posterior *p, size_t draws)
+{
+    struct store *s = &p->first;
+    store_reserve(s, p, draws + BLOCK);
+    const struct draw_rows rows = store_rows(s);
+    if (!p->grouped)
+        p->grouped = grouped_new(&p->problem);
+    p->points = grouped_points(&p->problem, draws);
+    grouped_run(p->grouped, &p->sampler, draws, &rows);
+    s->made = s->total = draws;
+    if (!posterior_is_doubtful(p))
+        return true;
+    p->points = s->made = s->total = 0;
+    sampler_start(&p->sampler, &p->key);
+    return false;
+}
+
 void posterior_simulated(struct posterior *p, size_t draws, bool *doubtful, bool *distrusted)
 {
+    *doubtful = *distrusted = false;
+    if (grouped_points(&p->problem, draws) > 0) {
+        if (run_grouped(p, draws))
+            return;
+        *doubtful = true;
+    }
     posterior_extend(p, draws);
-    *doubtful = posterior_is_doubtful(p);
-    *distrusted = false;
+    *doubtful = *doubtful || posterior_is_doubtful(p);
     for (size_t more = 1; more <= BATCHES_MORE && posterior_is_doubtful(p); more++)
         posterior_extend(p, draws * (1 + more));
     if (!posterior_is_doubtful(p))

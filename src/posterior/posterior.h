@@ -25,6 +25,10 @@ enum { CHAINS = 8, SECOND_DRAWS = 131072 };
  * array starts at r * stride. Levels are all levels of the design in list order. */
 struct draws {
     size_t n, stride, chains, levels, parameters;
+    /* Simulated fits may group draws: n / points of them share one (phi, sd), draw r * points + i
+     * belongs to point i, and moments have a row entry a point. Sets of points are the unit of
+     * Monte Carlo errors (grouped.h). Else points = n. */
+    size_t points;
     const double *link;      /* [level] mean, or logit of the rate */
     const double *response;  /* [level] mean or rate (continuous: the same array as link) */
     const double *parameter; /* [parameter] in the order of the model's parameter list */

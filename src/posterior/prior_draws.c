@@ -72,8 +72,8 @@ void prior_draws(const struct plan *plan, const struct rng_key *key, size_t coun
             if (p.binary)
                 p.math->logistic(BLOCK, link, out->response + k * out->stride + at);
         }
-        sampler_parameters(&p, BLOCK, w.pt.shape[0], w.pt.shape[1], w.pt.sd, w.beta, w.theta, out,
-                           at);
+        sampler_parameters(&p, BLOCK, BLOCK, w.pt.shape[0], w.pt.shape[1], w.pt.sd, w.beta, w.theta,
+                           out, at);
     }
     work_release(&w);
 }

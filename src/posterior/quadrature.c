@@ -317,8 +317,8 @@ static void write_block(struct grid *g, const struct draw_rows *out, size_t at)
         if (p->binary)
             p->math->logistic(BLOCK, link, out->response + k * out->stride + at);
     }
-    sampler_parameters(p, BLOCK, g->pt.shape[0], g->pt.shape[1], g->pt.sd, g->beta, g->theta, out,
-                       at);
+    sampler_parameters(p, BLOCK, BLOCK, g->pt.shape[0], g->pt.shape[1], g->pt.sd, g->beta, g->theta,
+                       out, at);
 }
 
 /* Systematic draws: the j-th stands at (j + u) / count of the running sums. */

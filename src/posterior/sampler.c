@@ -5,9 +5,18 @@
 #include <math.h>
 #include <string.h>
 
+#include "base/base.h"
 #include "base/isa.h"
 #include "base/mem.h"
 #include "base/vecmath.h"
+
+/* Rank-1 lattices: generators of the second shape and of ln sd (the first shape's is 1), spread
+ * evenly in every pair of coordinates. */
+struct lattice {
+    size_t points;
+    double second, v;
+};
+static const struct lattice lattices[] = {{16, 5, 7}, {32, 7, 12}, {64, 19, 27}};
 
 enum { PICK, JITTER_A0, JITTER_B0, JITTER_A1, JITTER_B1, SPARE };
 
@@ -93,6 +102,7 @@ void sampler_start(struct sampler *s, const struct rng_key *key)
     s->top = -INFINITY;
     s->sum = s->sum_squares = s->count = 0.0;
     s->longest_stay = s->steps = 0;
+    s->lattice = NULL;
 }
 
 static size_t pick_node(const struct proposal *q, double u)
@@ -103,17 +113,46 @@ static size_t pick_node(const struct proposal *q, double u)
     return node;
 }
 
-/* A node by weight, moved by a tent: the chains' picks of a step are spread evenly over (0, 1) by a
- * common random rotation, so that each chain's are uniform and independent. */
+static double wrapped(double u)
+{
+    return u >= 1.0 ? u - 1.0 : u;
+}
+
+/* The chains' picks of a step are spread evenly over (0, 1) by a common random rotation, so that
+ * each chain's are uniform and independent. */
+static void spread_over_chains(double *u)
+{
+    for (size_t i = 0; i < BLOCK; i++)
+        u[i] = wrapped(u[i / RNG_LANES * RNG_LANES] + (double)(i % RNG_LANES) / RNG_LANES);
+}
+
+/* Every set of numbers: multiples of generator / points (mod 1) from a common random shift on. */
+static void spread_as_lattice(const struct lattice *l, double generator, double *u)
+{
+    const double step = generator / (double)l->points;
+    for (size_t i = 0; i < BLOCK; i += l->points)
+        for (size_t j = 1; j < l->points; j++)
+            u[i + j] = wrapped(u[i + j - 1] + step);
+}
+
+/* The same density as propose_shapes has, smooth in the uniforms. */
+static void place_lattice(struct sampler *s)
+{
+    double *const u[SHAPES_MAX] = {s->uniform[PICK], s->uniform[JITTER_A0]};
+    if (s->q->dims == 0)
+        return;
+    spread_as_lattice(s->lattice, 1.0, u[0]);
+    spread_as_lattice(s->lattice, s->lattice->second, u[1]);
+    grid_inverse_place(&s->inverse, s->q, BLOCK, u, s->pt.coord);
+}
+
+/* A node by weight, moved by a tent. */
 static void propose_shapes(struct sampler *s)
 {
     const struct proposal *q = s->q;
     size_t node[BLOCK];
     for (size_t i = 0; q->dims > 0 && i < BLOCK; i++) {
-        double u =
-            s->uniform[PICK][i / RNG_LANES * RNG_LANES] + (double)(i % RNG_LANES) / RNG_LANES;
-        u -= u >= 1.0 ? 1.0 : 0.0;
-        node[i] = pick_node(q, u);
+        node[i] = pick_node(q, s->uniform[PICK][i]);
     }
     for (size_t d = 0; d < q->dims && d < SHAPES_MAX; d++) {
         const double *a = s->uniform[JITTER_A0 + 2 * d], *b = s->uniform[JITTER_B0 + 2 * d];
@@ -148,6 +187,8 @@ static void propose_v(struct sampler *s, const double *mode, const double *scale
 {
     const struct problem *p = s->p;
     p->kernel->uniforms(&s->rng, BLOCK, s->uniform_v);
+    if (s->lattice)
+        spread_as_lattice(s->lattice, s->lattice->v, s->uniform_v);
     if (!s->q->v_from_prior)
         p->kernel->propose_v(BLOCK, s->uniform_v, mode, scale, s->pt.v);
     for (size_t i = 0; i < BLOCK; i++)
@@ -254,7 +295,12 @@ static void propose(struct sampler *s)
     for (size_t i = 0; i <= 2 * p->dims; i++)
         p->kernel->uniforms(&s->rng, BLOCK, s->uniform[i]);
     p->kernel->uniforms(&s->rng, BLOCK, s->uniform_mix);
-    propose_shapes(s);
+    if (s->lattice) {
+        place_lattice(s);
+    } else {
+        spread_over_chains(s->uniform[PICK]);
+        propose_shapes(s);
+    }
     propose_shapes_from_prior(s);
     p->kernel->interpolate(s->q, BLOCK, s->pt.coord, density, mode, scale);
     if (p->sd_free)
@@ -306,7 +352,7 @@ static void count_stays(struct sampler *s)
     s->steps += BLOCK_STEPS;
 }
 
-void sampler_parameters(const struct problem *p, size_t n, const double *shape0,
+void sampler_parameters(const struct problem *p, size_t n, size_t count, const double *shape0,
                         const double *shape1, const double *sd, const double *beta,
                         const double *theta, const struct draw_rows *out, size_t at)
 {
@@ -317,22 +363,22 @@ void sampler_parameters(const struct problem *p, size_t n, const double *shape0,
         if (a->order > 1 && !p->second_order)
             continue;
         if (a->role == ROLE_SHAPE)
-            memcpy(to, shape++ == 0 ? shape0 : shape1, n * sizeof *to);
+            memcpy(to, shape++ == 0 ? shape0 : shape1, count * sizeof *to);
         else if (p->chain && linear++ == 0)
-            memcpy(to, first, n * sizeof *to);
+            memcpy(to, first, count * sizeof *to);
         else if (!p->chain)
-            memcpy(to, beta + linear++ * n, n * sizeof *to);
+            memcpy(to, beta + linear++ * n, count * sizeof *to);
         else
-            for (size_t i = 0; i < n; i++) /* the first step of the walk */
+            for (size_t i = 0; i < count; i++) /* the first step of the walk */
                 to[i] = second[i] - first[i];
         to += out->stride;
     }
     if (p->control >= 0) {
-        memcpy(to, theta + (size_t)p->control * n, n * sizeof *to);
+        memcpy(to, theta + (size_t)p->control * n, count * sizeof *to);
         to += out->stride;
     }
     if (!p->binary)
-        memcpy(to, sd, n * sizeof *sd);
+        memcpy(to, sd, count * sizeof *sd);
 }
 
 static void copy_rows(double *to, size_t stride, size_t at, const double *from, size_t rows)
@@ -362,13 +408,27 @@ static void draw_accepted(struct sampler *s, const struct draw_rows *out, size_t
     copy_rows(out->link, out->stride, at, theta, p->levels);
     if (p->binary)
         copy_rows(out->response, out->stride, at, rest + p->levels * BLOCK, p->levels);
-    sampler_parameters(p, BLOCK, shape0, shape1, sd, beta, theta, out, at);
+    sampler_parameters(p, BLOCK, BLOCK, shape0, shape1, sd, beta, theta, out, at);
+}
+
+void sampler_lattice(struct sampler *s, size_t points)
+{
+    s->lattice = &lattices[0];
+    for (size_t i = 1; i < COUNT_OF(lattices) && lattices[i].points <= points; i++)
+        s->lattice = &lattices[i];
+    if (s->q->dims > 0)
+        grid_inverse_fill(&s->inverse, s->q);
+}
+
+void sampler_propose(struct sampler *s)
+{
+    propose(s);
+    count_weights(s);
 }
 
 void sampler_block(struct sampler *s, const struct draw_rows *out, size_t at)
 {
-    propose(s);
-    count_weights(s);
+    sampler_propose(s);
     s->p->kernel->uniforms(&s->rng, BLOCK, s->uniform_accept);
     s->p->kernel->accept(s);
     count_stays(s);

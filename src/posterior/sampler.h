@@ -13,6 +13,7 @@
 
 #include "base/rng.h"
 #include "posterior/density.h"
+#include "posterior/grid_inverse.h"
 #include "posterior/proposal.h"
 
 enum { BLOCK = 64, BLOCK_STEPS = BLOCK / RNG_LANES, TAIL_DF = 24 };
@@ -29,7 +30,9 @@ struct sampler {
     const struct problem *p;
     const struct proposal *q;
     struct rng_lanes rng;
-    struct points pt; /* the proposals of a block */
+    const struct lattice *lattice; /* NULL: proposals for chains */
+    struct grid_inverse inverse;   /* with a lattice */
+    struct points pt;              /* the proposals of a block */
     double *normal, *theta, *response, *beta, *pseudo_y, *pseudo_w;
     double *uniform[6]; /* pick, two jitters a dim; see sampler.c */
     double *uniform_v, *uniform_mix, *uniform_accept;
@@ -52,8 +55,17 @@ void sampler_start(struct sampler *s, const struct rng_key *key);
 /* One block: proposals, acceptance, draws. out->... of draws [at, at + BLOCK). */
 void sampler_block(struct sampler *s, const struct draw_rows *out, size_t at);
 
-/* Parameter rows of one block of n points: natural values into the model's parameter order. */
-void sampler_parameters(const struct problem *p, size_t n, const double *shape0,
+/* A block of proposals only: pt, log_weight and the sums of weights. */
+void sampler_propose(struct sampler *s);
+/* Once a fit, after sampler_start: from now on the shapes and ln sd of each set of consecutive
+ * proposals are a lattice shifted at random: sets of 16, 32 or 64: the largest of them
+ * that is not above `points`, at least 16. Not for chains. */
+void sampler_lattice(struct sampler *s, size_t points);
+
+/* Parameter rows of `count` of a block of n points: natural values into the model's parameter
+ * order.
+ */
+void sampler_parameters(const struct problem *p, size_t n, size_t count, const double *shape0,
                         const double *shape1, const double *sd, const double *beta,
                         const double *theta, const struct draw_rows *out, size_t at);
 

@@ -274,5 +274,6 @@ void slice_sweep(struct slice *s, const struct draw_rows *out, size_t at)
     if (p->binary)
         put_rows(out->response, out->stride, at, s->response, p->levels);
     put_rows(out->link, out->stride, at, s->theta, p->levels);
-    sampler_parameters(p, N, s->pt.shape[0], s->pt.shape[1], s->pt.sd, s->beta, s->theta, out, at);
+    sampler_parameters(p, N, N, s->pt.shape[0], s->pt.shape[1], s->pt.sd, s->beta, s->theta, out,
+                       at);
 }

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* bench_analysis.c: microseconds of one simulated analysis (fit of 1,000 draws, targets, a decision,
- * next shares), as whole simulated trials will make by the million; and how large its Monte Carlo
- * error is: the root mean square over repeats and levels of Pr(target) about its mean. */
+/* bench_analysis.c: microseconds of one simulated analysis (fit of 1,000 draws, targets, a
+ * decision, next shares), as whole simulated trials will make by the million; and how large its
+ * Monte Carlo error is: the root mean square over repeats and levels of Pr(target) about its mean.
+ */
 #include <math.h>
 #include <stdio.h>
 #include <string.h>

@@ -115,8 +115,13 @@ void posterior_simulated(struct posterior *p, size_t draws, bool *doubtful, bool
 
 static struct draws rows_of(const double *x, size_t n, size_t chains)
 {
-    return (struct draws){
-        .n = n, .stride = n, .chains = chains, .levels = LEVELS, .link = x, .response = x};
+    return (struct draws){.n = n,
+                          .points = n,
+                          .stride = n,
+                          .chains = chains,
+                          .levels = LEVELS,
+                          .link = x,
+                          .response = x};
 }
 
 struct draws posterior_draws(const struct posterior *p)

@@ -57,8 +57,13 @@ double *tiny_draws(struct draws *out, const struct tiny_world *w, size_t n,
     for (size_t k = 0; k < w->d.levels; k++)
         for (size_t i = 0; i < n; i++)
             x[k * stride + i] = value(i, k);
-    *out = (struct draws){
-        .n = n, .stride = stride, .chains = 1, .levels = w->d.levels, .link = x, .response = x};
+    *out = (struct draws){.n = n,
+                          .points = n,
+                          .stride = stride,
+                          .chains = 1,
+                          .levels = w->d.levels,
+                          .link = x,
+                          .response = x};
     return x;
 }
 
