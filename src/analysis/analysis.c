@@ -117,21 +117,15 @@ void analysis_release(struct analysis *a)
 
 /* ---- workspace ---- */
 
-enum status analyst_new(struct analyst **out, const struct design *d, struct err *e)
+struct analyst *analyst_new(const struct design *d)
 {
     struct analyst *w = mem_new(1, sizeof *w);
     w->d = d;
-    *out = NULL;
-    const enum status status = plan_new(&w->plan, d, &d->model, e);
-    if (status != STATUS_OK) {
-        mem_free(w);
-        return status;
-    }
+    w->plan = plan_new(d, &d->model);
     w->p = posterior_new(w->plan);
     w->j = judgement_new(d);
     w->diagnosed = mem_new(d->model.parameters + d->levels, sizeof *w->diagnosed);
-    *out = w;
-    return STATUS_OK;
+    return w;
 }
 
 void analyst_free(struct analyst *w)
@@ -292,16 +286,10 @@ enum status analysis_run(struct analysis *out, struct analyst *w, const struct l
     return STATUS_DISTRUSTED;
 }
 
-enum status analysis_prior(struct analysis *out, struct analyst *w, const struct design *d,
-                           struct err *e)
+void analysis_prior(struct analysis *out, struct analyst *w, const struct design *d)
 {
     const struct rng_key key = {d->seed, RNG_PRIOR, 0, 0, 0};
     const struct analysis_request r = {.number = 0, .threads = 1};
-    for (size_t i = 0; i < d->model.parameters; i++)
-        if (!prior_is_fixed(&d->model.prior[i]) && !prior_is_computable(&d->model.prior[i]))
-            return err_add(e, STATUS_INPUT, d->file, 0, "/model/priors",
-                           "this version cannot draw from the prior of %s",
-                           d->model.parameter[i]->name);
     clear(out, &r);
     judgement_open(w->j, NULL);
     w->draws = posterior_prior(w->p, PRIOR_DRAWS, key);
@@ -312,5 +300,4 @@ enum status analysis_prior(struct analysis *out, struct analyst *w, const struct
     judge_selection(w->j);
     measure_gains(w->j);
     figures_full(out, w->j);
-    return STATUS_OK;
 }

@@ -130,7 +130,7 @@ struct analysis_request {
 
 /* Workspace for repeated analyses of one design (one per thread). */
 struct analyst;
-enum status analyst_new(struct analyst **out, const struct design *d, struct err *e);
+struct analyst *analyst_new(const struct design *d);
 void analyst_free(struct analyst *w);
 /* The draws behind the last analysis_run (for draws.csv); valid until the next run. */
 struct draws analyst_draws(const struct analyst *w);
@@ -144,10 +144,8 @@ void analysis_init(struct analysis *a, const struct design *d);
 void analysis_release(struct analysis *a);
 
 /* What the priors imply before any data, for `check`: level responses, gains, pr_target, pr_meets,
- * Pr(none). Fills level[], target[] of *out only. STATUS_INPUT with a fault where this version
- * cannot compute the priors. */
-enum status analysis_prior(struct analysis *out, struct analyst *w, const struct design *d,
-                           struct err *e);
+ * Pr(none). Fills level[], target[] of *out only. */
+void analysis_prior(struct analysis *out, struct analyst *w, const struct design *d);
 
 /* The true target level of a scenario: index or LEVEL_NONE; comparisons carry the tolerance 1e-9 x
  * max(1, |effect|, largest |gain|). Response scale in, `response` has one entry per level. */

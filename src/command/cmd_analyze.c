@@ -141,7 +141,6 @@ static enum status read_inputs(struct run *r, const struct options *o, struct er
         if (options_has(o, "seed")) {
             r->design->seed = (uint64_t)options_number(o, "seed", 0);
         }
-        design_check_analysable(r->design, e);
         read_closed(r, o, e);
         read_data(r, o, e);
     } else {
@@ -163,9 +162,7 @@ static enum status compute(struct run *r, const struct options *o, struct err *e
     q->seed = d->seed;
     q->live = true;
     q->threads = threads_wanted(o);
-    if (analyst_new(&r->analyst, d, e) != STATUS_OK) {
-        return e->status;
-    }
+    r->analyst = analyst_new(d);
     analysis_init(&r->analysis, d);
     r->analysed = true;
     return analysis_run(&r->analysis, r->analyst, &r->data->by_level, q, e);

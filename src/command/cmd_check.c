@@ -34,7 +34,6 @@ struct run {
     struct prior_bands bands;
     struct expected expected;
     struct check_notes notes;
-    char *prior_fault;
     struct outdir *dir;
     struct text json, words;
 };
@@ -52,7 +51,6 @@ static void run_release(struct run *r)
     analyst_free(r->analyst);
     outdir_free(r->dir);
     design_free(r->design);
-    mem_free(r->prior_fault);
     text_release(&r->json);
     text_release(&r->words);
 }
@@ -74,45 +72,24 @@ static enum status print_schema(const struct options *o, struct err *e)
     return status;
 }
 
-/* What this version cannot compute is said in the text; it is no fault of the design. */
-static void keep_fault(struct run *r, const struct err *why)
-{
-    struct text s = TEXT_INIT;
-    text_add(&s, "This version cannot compute what the priors imply:");
-    for (size_t i = 0; i < why->count; i++) {
-        text_addf(&s, "%s %s", i ? ";" : "", why->faults[i].message);
-    }
-    text_add(&s, ".");
-    r->prior_fault = text_take(&s);
-}
-
 static void look_at_priors(struct run *r)
 {
-    struct err why = ERR_INIT;
-    if (analyst_new(&r->analyst, r->design, &why) == STATUS_OK) {
-        analysis_init(&r->prior, r->design);
-        r->has_prior = true;
-        if (analysis_prior(&r->prior, r->analyst, r->design, &why) == STATUS_OK) {
-            struct draws draws = analyst_draws(r->analyst);
-            prior_bands_init(&r->bands, r->design, &draws);
-        }
-    }
-    if (why.status != STATUS_OK) {
-        keep_fault(r, &why);
-    }
-    err_release(&why);
+    r->analyst = analyst_new(r->design);
+    analysis_init(&r->prior, r->design);
+    r->has_prior = true;
+    analysis_prior(&r->prior, r->analyst, r->design);
+    const struct draws draws = analyst_draws(r->analyst);
+    prior_bands_init(&r->bands, r->design, &draws);
 }
 
 static void write_documents(struct run *r, const struct terminal *t)
 {
-    bool known = r->prior_fault == NULL;
     expected_init(&r->expected, r->design);
-    check_notes_init(&r->notes, r->design, &r->expected, known ? &r->bands : NULL);
+    check_notes_init(&r->notes, r->design, &r->expected, &r->bands);
     r->has_notes = true;
     struct check_report report = {.d = r->design,
-                                  .prior = known ? &r->prior : NULL,
-                                  .bands = known ? &r->bands : NULL,
-                                  .prior_fault = r->prior_fault,
+                                  .prior = &r->prior,
+                                  .bands = &r->bands,
                                   .expected = &r->expected,
                                   .notes = &r->notes};
     check_json(&r->json, &report);

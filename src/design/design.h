@@ -216,7 +216,4 @@ const char *model_formula(const struct model *m);
 int design_target_find(const struct design *d, const char *name); /* index or -1 */
 int design_level_find(const struct design *d, const char *label); /* index or -1 */
 
-/* STATUS_INPUT with one fault per thing that this version of `analyze` cannot do yet. */
-enum status design_check_analysable(const struct design *d, struct err *e);
-
 #endif

@@ -111,8 +111,5 @@
 #define MSG_NOT_FINITE "the truth at level \"%s\" is not a finite number"
 
 /* What this version cannot analyze (design_check_analysable). */
-#define MSG_LATER_FAMILY "this version cannot analyze a prior of family %s; it can: %s"
-#define MSG_LATER_TRUNCATED "this version cannot analyze a prior cut off by above or below"
-#define MSG_LATER_SENSITIVITY "this version cannot refit sensitivity models; leave them out"
 
 #endif

@@ -5,6 +5,7 @@
 #include <math.h>
 
 #include "base/base.h"
+#include "base/vecmath.h"
 #include "design/prior_families.h"
 
 #define LN_2 0.69314718055994530942
@@ -19,13 +20,6 @@ bool prior_is_fixed(const struct prior *p)
 bool prior_is_truncated(const struct prior *p)
 {
     return p->above > -INFINITY || p->below < INFINITY;
-}
-
-bool prior_is_computable(const struct prior *p)
-{
-    if (p->family == NULL || prior_is_truncated(p))
-        return false;
-    return prior_is_fixed(p) || p->family->log_density != NULL;
 }
 
 static struct prior prior_make(const struct prior_family *family, double first, double second)
@@ -59,17 +53,81 @@ static double fixed_value(const struct prior *p)
     return p->on_variance ? __builtin_sqrt(p->arg[0]) : p->arg[0];
 }
 
-double prior_quantile(const struct prior *p, double q)
+/* --- mass and quantiles --- */
+
+/* Pr(X < a), Pr(X > b) of the uncut family, and what lies between; each by the tail that keeps its
+ * digits. */
+struct cut {
+    double below, above, mass;
+    bool upper; /* everything lies in the upper half */
+};
+
+static struct cut cut_of(const struct prior *p)
+{
+    const struct prior_family *f = p->family;
+    const bool low = p->above > -INFINITY, high = p->below < INFINITY;
+    struct cut c = {low ? f->cdf(p->arg, p->above) : 0.0, high ? f->upper(p->arg, p->below) : 0.0,
+                    0, false};
+    const double beyond_low = low ? f->upper(p->arg, p->above) : 1.0;
+    const double under_high = high ? f->cdf(p->arg, p->below) : 1.0;
+
+    c.upper = beyond_low < 0.5;
+    if (c.upper)
+        c.mass = beyond_low - c.above;
+    else if (under_high < 0.5)
+        c.mass = under_high - c.below;
+    else
+        c.mass = 1.0 - c.below - c.above;
+    return c;
+}
+
+double prior_mass(const struct prior *p)
+{
+    if (prior_is_fixed(p) || !prior_is_truncated(p))
+        return 1;
+    return cut_of(p).mass;
+}
+
+void prior_settle(struct prior *p)
+{
+    p->log_mass = prior_is_truncated(p) ? vm_log(prior_mass(p)) : 0;
+}
+
+/* the quantile of the cut family at u, rest = 1 - u */
+static double cut_quantile(const struct prior *p, double u, double rest)
+{
+    const struct prior_family *f = p->family;
+    const struct cut c = cut_of(p);
+    const double under = c.below + u * c.mass, over = c.above + rest * c.mass;
+    const double x =
+        c.upper || over < 0.5 ? f->quantile_upper(p->arg, over) : f->quantile(p->arg, under);
+
+    return x < p->above ? p->above : x > p->below ? p->below : x;
+}
+
+/* at u, or at 1 - rest where that keeps more digits */
+static double quantile_at(const struct prior *p, double u, double rest)
 {
     double x;
 
     if (prior_is_fixed(p))
         return fixed_value(p);
-    if (!prior_is_computable(p))
-        BUG("a quantile of a prior that cannot be computed");
-    x = p->family->quantile(p->arg, q);
+    if (prior_is_truncated(p))
+        x = cut_quantile(p, u, rest);
+    else
+        x = u < 0.5 ? p->family->quantile(p->arg, u) : p->family->quantile_upper(p->arg, rest);
     return p->on_variance ? __builtin_sqrt(x) : x;
 }
+
+double prior_quantile(const struct prior *p, double q)
+{
+    if (prior_is_fixed(p) || prior_is_truncated(p))
+        return quantile_at(p, q, 1.0 - q);
+    return p->on_variance ? __builtin_sqrt(p->family->quantile(p->arg, q))
+                          : p->family->quantile(p->arg, q);
+}
+
+/* --- density --- */
 
 /* With v = x^2 the density of x is p(v) 2 x. */
 static void variance_log_density(const struct prior *p, size_t n, const double *x,
@@ -86,11 +144,9 @@ static void variance_log_density(const struct prior *p, size_t n, const double *
         out[i] += LN_2 + log_x[i];
 }
 
-void prior_log_density(const struct prior *p, size_t n, const double *x, const double *log_x,
-                       double *out)
+static void uncut_log_density(const struct prior *p, size_t n, const double *x, const double *log_x,
+                              double *out)
 {
-    if (prior_is_fixed(p) || !prior_is_computable(p))
-        BUG("a density of a prior that has none here");
     if (!p->on_variance) {
         p->family->log_density(p->arg, n, x, log_x, out);
         return;
@@ -99,39 +155,108 @@ void prior_log_density(const struct prior *p, size_t n, const double *x, const d
         variance_log_density(p, n - i < BLOCK ? n - i : BLOCK, x + i, log_x + i, out + i);
 }
 
-/* Moments of a square root or of a cut prior have no closed form that serves every family. */
-static bool has_closed_moments(const struct prior *p)
+void prior_log_density(const struct prior *p, size_t n, const double *x, const double *log_x,
+                       double *out)
 {
-    return p->family != NULL && !p->on_variance && !prior_is_truncated(p);
-}
-
-double prior_mean(const struct prior *p)
-{
-    if (prior_is_fixed(p))
-        return fixed_value(p);
-    return has_closed_moments(p) ? p->family->mean(p->arg) : NAN;
-}
-
-double prior_sd(const struct prior *p)
-{
-    double sd;
+    double low, high;
 
     if (prior_is_fixed(p))
-        return 0;
-    sd = has_closed_moments(p) ? p->family->sd(p->arg) : NAN;
-    return isfinite(sd) ? sd : NAN;
+        BUG("a density of a prior that has none");
+    uncut_log_density(p, n, x, log_x, out);
+    if (!prior_is_truncated(p))
+        return;
+    prior_support(p, &low, &high);
+    for (size_t i = 0; i < n; i++)
+        out[i] = x[i] < low || x[i] > high ? -INFINITY : out[i] - p->log_mass;
+}
+
+static double root(double x)
+{
+    return x > 0 ? __builtin_sqrt(x) : 0;
 }
 
 void prior_support(const struct prior *p, double *low, double *high)
 {
-    *low = p->family->support_low;
-    *high = INFINITY;
-    if (p->family == &prior_family_uniform) {
-        *low = p->arg[0];
-        *high = p->arg[1];
-    }
+    const bool uniform = p->family == &prior_family_uniform;
+
+    *low = uniform ? p->arg[0] : p->family->support_low;
+    *high = uniform ? p->arg[1] : INFINITY;
+    *low = p->above > *low ? p->above : *low;
+    *high = p->below < *high ? p->below : *high;
     if (p->on_variance) {
-        *low = __builtin_sqrt(*low > 0 ? *low : 0);
-        *high = *high < INFINITY ? __builtin_sqrt(*high) : *high;
+        *low = root(*low);
+        *high = *high < INFINITY ? root(*high) : *high;
     }
+}
+
+/* --- moments --- */
+
+/* Whether the moment of an order exists. */
+static bool has_moment(const struct prior *p, double order)
+{
+    const struct prior_family *f = p->family;
+    const bool upper = !(p->below < INFINITY), lower = f->two_sided && !(p->above > -INFINITY);
+
+    if (f->moments_below == NULL || (!upper && !lower))
+        return true;
+    return f->moments_below(p->arg) > (p->on_variance ? order / 2 : order);
+}
+
+/* E (X - centre)^order, order 1 or 2: integral of the quantile function over (0, 1) with
+ * u = 1 / (1 + exp(-pi sinh t)). */
+static double moment_about(const struct prior *p, double centre, int order)
+{
+    const double step = 1.0 / 32, pi = 3.14159265358979323846;
+    double sum = 0, weights = 0;
+
+    for (int k = -190; k <= 190; k++) {
+        const double e = vm_exp(step * k), sinh = 0.5 * (e - 1 / e), cosh = 0.5 * (e + 1 / e);
+        const double u = vm_logistic(pi * sinh), rest = vm_logistic(-pi * sinh);
+        const double weight = u * rest * cosh;
+
+        if (!(u > 1e-290 && rest > 1e-290))
+            continue;
+        const double x = quantile_at(p, u, rest) - centre;
+        sum += weight * (order == 2 ? x * x : x);
+        weights += weight;
+    }
+    return sum / weights;
+}
+
+static bool has_closed_moments(const struct prior *p)
+{
+    return !p->on_variance && !prior_is_truncated(p);
+}
+
+double prior_mean(const struct prior *p)
+{
+    double mean, centre;
+
+    if (prior_is_fixed(p))
+        return fixed_value(p);
+    if (!has_moment(p, 1))
+        return NAN;
+    if (has_closed_moments(p))
+        return p->family->mean(p->arg);
+    centre = prior_quantile(p, 0.5);
+    mean = centre + moment_about(p, centre, 1);
+    return isfinite(mean) ? mean : NAN;
+}
+
+double prior_sd(const struct prior *p)
+{
+    double sd, centre, off;
+
+    if (prior_is_fixed(p))
+        return 0;
+    if (!has_moment(p, 2))
+        return NAN;
+    if (has_closed_moments(p)) {
+        sd = p->family->sd(p->arg);
+    } else {
+        centre = prior_quantile(p, 0.5);
+        off = moment_about(p, centre, 1);
+        sd = root(moment_about(p, centre, 2) - off * off);
+    }
+    return isfinite(sd) ? sd : NAN;
 }

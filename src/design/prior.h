@@ -25,12 +25,20 @@ struct prior_family {
     double support_low; /* -INFINITY or 0: lowest x with density > 0 (normal, uniform,
                            student_t: -INFINITY; uniform is checked by its min) */
     /* Normalised log density at n points; log_x may be NULL when support_low is -INFINITY. No
-     * truncation. NULL: this version cannot sample it (refused by analyze). */
+     * truncation. NULL for `fixed`, as the functions below. */
     void (*log_density)(const double *arg, size_t n, const double *x, const double *log_x,
                         double *out);
-    double (*cdf)(const double *arg, double x);      /* NULL as above */
-    double (*quantile)(const double *arg, double p); /* NULL as above; 0 < p < 1 */
-    double (*mean)(const double *arg);               /* +-INFINITY or NaN where it does not exist */
+    /* Pr(X < x) and Pr(X > x), each with its digits where it is small, and their inverses for
+     * 0 < p < 1. */
+    double (*cdf)(const double *arg, double x);
+    double (*upper)(const double *arg, double x);
+    double (*quantile)(const double *arg, double p);
+    double (*quantile_upper)(const double *arg, double q);
+    /* Moments below this order exist (of the upper tail; two_sided: of the lower as well); NULL:
+     * all do. */
+    double (*moments_below)(const double *arg);
+    bool two_sided;
+    double (*mean)(const double *arg); /* +-INFINITY or NaN where it does not exist */
     double (*sd)(const double *arg);
 };
 
@@ -41,6 +49,7 @@ struct prior {
     double arg[PRIOR_ARGS];
     double above, below;
     bool on_variance; /* the prior is on the square of the number it is filed under */
+    double log_mass;  /* ln of the mass between the cuts: prior_settle; 0 without cuts */
 };
 
 extern const struct prior_family *const prior_families[]; /* NULL-terminated; the only list */
@@ -48,9 +57,13 @@ extern const struct prior_family *const prior_families[]; /* NULL-terminated; th
 const struct prior_family *prior_family_find(const char *key);
 bool prior_is_fixed(const struct prior *p);
 bool prior_is_truncated(const struct prior *p);
-/* Whether quantiles and densities can be computed by this version (no truncation yet, a family
- * with functions). */
-bool prior_is_computable(const struct prior *p);
+/* The mass between the cuts; below PRIOR_LEAST_MASS a cut prior is refused. */
+#define PRIOR_LEAST_MASS 1e-290
+double prior_mass(const struct prior *p);
+/* After the cuts are set: fills log_mass. */
+void prior_settle(struct prior *p);
+/* The closed interval of the number itself outside which the density is 0. */
+void prior_support(const struct prior *p, double *low, double *high);
 
 struct prior prior_normal(double mean, double sd);
 struct prior prior_half_normal(double sd);
@@ -62,8 +75,9 @@ double prior_quantile(const struct prior *p, double q);
 /* Log density of the number itself at n points (with the Jacobian of on_variance). */
 void prior_log_density(const struct prior *p, size_t n, const double *x, const double *log_x,
                        double *out);
-void prior_support(const struct prior *p, double *low, double *high);
+/* NaN where the moment does not exist; sd 0 for fixed. Closed forms, else by double exponential
+ * quadrature over the quantile function (Takahasi & Mori 1974, Publ. RIMS Kyoto 9:721). */
 double prior_mean(const struct prior *p);
-double prior_sd(const struct prior *p); /* NaN when unknown or infinite; 0 for fixed */
+double prior_sd(const struct prior *p);
 
 #endif

@@ -6,6 +6,7 @@
 #include <string.h>
 
 #include "base/vecmath.h"
+#include "design/special.h"
 
 #define LN_2 0.69314718055994530942
 #define HALF_LN_2_PI 0.91893853320467274178
@@ -36,6 +37,16 @@ static double normal_quantile(const double *arg, double p)
     return arg[0] + arg[1] * vm_normal_quantile(p);
 }
 
+static double normal_upper(const double *arg, double x)
+{
+    return vm_normal_cdf((arg[0] - x) / arg[1]);
+}
+
+static double normal_quantile_upper(const double *arg, double q)
+{
+    return arg[0] - arg[1] * vm_normal_quantile(q);
+}
+
 static double normal_mean(const double *arg)
 {
     return arg[0];
@@ -62,7 +73,17 @@ static void half_normal_log_density(const double *arg, size_t n, const double *x
 
 static double half_normal_cdf(const double *arg, double x)
 {
-    return x <= 0.0 ? 0.0 : 1.0 - 2.0 * vm_normal_cdf(-x / arg[0]);
+    return x <= 0.0 ? 0.0 : special_normal_within(x / arg[0]);
+}
+
+static double half_normal_upper(const double *arg, double x)
+{
+    return x <= 0.0 ? 1.0 : 2.0 * vm_normal_cdf(-x / arg[0]);
+}
+
+static double half_normal_quantile_upper(const double *arg, double q)
+{
+    return -arg[0] * vm_normal_quantile(0.5 * q);
 }
 
 static double half_normal_quantile(const double *arg, double p)
@@ -101,6 +122,16 @@ static double lognormal_cdf(const double *arg, double x)
 static double lognormal_quantile(const double *arg, double p)
 {
     return vm_exp(arg[0] + arg[1] * vm_normal_quantile(p));
+}
+
+static double lognormal_upper(const double *arg, double x)
+{
+    return x <= 0.0 ? 1.0 : vm_normal_cdf((arg[0] - vm_log(x)) / arg[1]);
+}
+
+static double lognormal_quantile_upper(const double *arg, double q)
+{
+    return vm_exp(arg[0] - arg[1] * vm_normal_quantile(q));
 }
 
 static double lognormal_mean(const double *arg)
@@ -149,6 +180,18 @@ static double uniform_quantile(const double *arg, double p)
     return arg[0] + p * (arg[1] - arg[0]);
 }
 
+static double uniform_upper(const double *arg, double x)
+{
+    if (x >= arg[1])
+        return 0.0;
+    return x <= arg[0] ? 1.0 : (arg[1] - x) / (arg[1] - arg[0]);
+}
+
+static double uniform_quantile_upper(const double *arg, double q)
+{
+    return arg[1] - q * (arg[1] - arg[0]);
+}
+
 static double uniform_mean(const double *arg)
 {
     return arg[0] + 0.5 * (arg[1] - arg[0]);
@@ -161,6 +204,37 @@ static double uniform_sd(const double *arg)
 
 /* --- gamma: shape, rate --- */
 
+static void gamma_log_density(const double *arg, size_t n, const double *x, const double *log_x,
+                              double *out)
+{
+    const double top = arg[0] * vm_log(arg[1]) - special_log_gamma(arg[0]);
+
+    for (size_t i = 0; i < n; i++) {
+        const double inside = top + (arg[0] - 1.0) * log_x[i] - arg[1] * x[i];
+        out[i] = x[i] < 0.0 ? -INFINITY : inside;
+    }
+}
+
+static double gamma_cdf(const double *arg, double x)
+{
+    return special_gamma_tail(arg[0], arg[1] * x, false);
+}
+
+static double gamma_upper(const double *arg, double x)
+{
+    return special_gamma_tail(arg[0], arg[1] * x, true);
+}
+
+static double gamma_quantile(const double *arg, double p)
+{
+    return special_gamma_quantile(arg[0], p, false) / arg[1];
+}
+
+static double gamma_quantile_upper(const double *arg, double q)
+{
+    return special_gamma_quantile(arg[0], q, true) / arg[1];
+}
+
 static double gamma_mean(const double *arg)
 {
     return arg[0] / arg[1];
@@ -172,6 +246,37 @@ static double gamma_sd(const double *arg)
 }
 
 /* --- inverse_gamma: shape, scale --- */
+
+static void inverse_gamma_log_density(const double *arg, size_t n, const double *x,
+                                      const double *log_x, double *out)
+{
+    const double top = arg[0] * vm_log(arg[1]) - special_log_gamma(arg[0]);
+
+    for (size_t i = 0; i < n; i++) {
+        const double inside = top - (arg[0] + 1.0) * log_x[i] - arg[1] / x[i];
+        out[i] = x[i] > 0.0 ? inside : -INFINITY;
+    }
+}
+
+static double inverse_gamma_cdf(const double *arg, double x)
+{
+    return x <= 0.0 ? 0.0 : special_gamma_tail(arg[0], arg[1] / x, true);
+}
+
+static double inverse_gamma_upper(const double *arg, double x)
+{
+    return x <= 0.0 ? 1.0 : special_gamma_tail(arg[0], arg[1] / x, false);
+}
+
+static double inverse_gamma_quantile(const double *arg, double p)
+{
+    return arg[1] / special_gamma_quantile(arg[0], p, true);
+}
+
+static double inverse_gamma_quantile_upper(const double *arg, double q)
+{
+    return arg[1] / special_gamma_quantile(arg[0], q, false);
+}
 
 static double inverse_gamma_mean(const double *arg)
 {
@@ -187,6 +292,39 @@ static double inverse_gamma_sd(const double *arg)
 
 /* --- student_t: df, location, scale --- */
 
+static void student_t_log_density(const double *arg, size_t n, const double *x, const double *log_x,
+                                  double *out)
+{
+    const double df = arg[0], inverse = 1.0 / arg[2];
+    const double top = special_t_log_density_top(df) - vm_log(arg[2]);
+
+    (void)log_x;
+    for (size_t i = 0; i < n; i++) {
+        const double z = (x[i] - arg[1]) * inverse;
+        out[i] = top - 0.5 * (df + 1.0) * vm_log(1.0 + z * z / df);
+    }
+}
+
+static double student_t_cdf(const double *arg, double x)
+{
+    return special_t_tail(arg[0], (x - arg[1]) / arg[2], false);
+}
+
+static double student_t_upper(const double *arg, double x)
+{
+    return special_t_tail(arg[0], (x - arg[1]) / arg[2], true);
+}
+
+static double student_t_quantile(const double *arg, double p)
+{
+    return arg[1] + arg[2] * special_t_quantile(arg[0], p, false);
+}
+
+static double student_t_quantile_upper(const double *arg, double q)
+{
+    return arg[1] + arg[2] * special_t_quantile(arg[0], q, true);
+}
+
 static double student_t_mean(const double *arg)
 {
     return arg[0] > 1.0 ? arg[1] : NAN;
@@ -199,6 +337,17 @@ static double student_t_sd(const double *arg)
     return arg[0] > 2.0 ? arg[2] * __builtin_sqrt(arg[0] / (arg[0] - 2.0)) : INFINITY;
 }
 
+/* moments of lower order exist */
+static double inverse_gamma_moments(const double *arg)
+{
+    return arg[0];
+}
+
+static double student_t_moments(const double *arg)
+{
+    return arg[0];
+}
+
 /* --- the list --- */
 
 const struct prior_family prior_family_normal = {
@@ -208,7 +357,9 @@ const struct prior_family prior_family_normal = {
     .support_low = -INFINITY,
     .log_density = normal_log_density,
     .cdf = normal_cdf,
+    .upper = normal_upper,
     .quantile = normal_quantile,
+    .quantile_upper = normal_quantile_upper,
     .mean = normal_mean,
     .sd = normal_sd,
 };
@@ -220,7 +371,9 @@ const struct prior_family prior_family_half_normal = {
     .support_low = 0,
     .log_density = half_normal_log_density,
     .cdf = half_normal_cdf,
+    .upper = half_normal_upper,
     .quantile = half_normal_quantile,
+    .quantile_upper = half_normal_quantile_upper,
     .mean = half_normal_mean,
     .sd = half_normal_sd,
 };
@@ -233,7 +386,9 @@ const struct prior_family prior_family_lognormal = {
     .support_low = 0,
     .log_density = lognormal_log_density,
     .cdf = lognormal_cdf,
+    .upper = lognormal_upper,
     .quantile = lognormal_quantile,
+    .quantile_upper = lognormal_quantile_upper,
     .mean = lognormal_mean,
     .sd = lognormal_sd,
 };
@@ -243,6 +398,11 @@ const struct prior_family prior_family_gamma = {
     .sentence = "gamma",
     .args = {{"shape", true, "shape"}, {"rate", true, "rate; the mean is shape / rate"}},
     .support_low = 0,
+    .log_density = gamma_log_density,
+    .cdf = gamma_cdf,
+    .upper = gamma_upper,
+    .quantile = gamma_quantile,
+    .quantile_upper = gamma_quantile_upper,
     .mean = gamma_mean,
     .sd = gamma_sd,
 };
@@ -253,6 +413,12 @@ const struct prior_family prior_family_inverse_gamma = {
     .args = {{"shape", true, "shape"},
              {"scale", true, "scale; the mean is scale / (shape - 1) when shape is above 1"}},
     .support_low = 0,
+    .log_density = inverse_gamma_log_density,
+    .cdf = inverse_gamma_cdf,
+    .upper = inverse_gamma_upper,
+    .quantile = inverse_gamma_quantile,
+    .quantile_upper = inverse_gamma_quantile_upper,
+    .moments_below = inverse_gamma_moments,
     .mean = inverse_gamma_mean,
     .sd = inverse_gamma_sd,
 };
@@ -264,7 +430,9 @@ const struct prior_family prior_family_uniform = {
     .support_low = -INFINITY,
     .log_density = uniform_log_density,
     .cdf = uniform_cdf,
+    .upper = uniform_upper,
     .quantile = uniform_quantile,
+    .quantile_upper = uniform_quantile_upper,
     .mean = uniform_mean,
     .sd = uniform_sd,
 };
@@ -272,10 +440,17 @@ const struct prior_family prior_family_uniform = {
 const struct prior_family prior_family_student_t = {
     .key = "student_t",
     .sentence = "Student t",
+    .two_sided = true,
     .args = {{"df", true, "degrees of freedom"},
              {"location", false, "centre"},
              {"scale", true, "scale; the standard deviation is larger, infinite up to df 2"}},
     .support_low = -INFINITY,
+    .log_density = student_t_log_density,
+    .cdf = student_t_cdf,
+    .upper = student_t_upper,
+    .quantile = student_t_quantile,
+    .quantile_upper = student_t_quantile_upper,
+    .moments_below = student_t_moments,
     .mean = student_t_mean,
     .sd = student_t_sd,
 };

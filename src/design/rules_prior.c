@@ -96,12 +96,7 @@ static bool has_mass(const struct prior *p)
 
     if (prior_is_fixed(p))
         return p->above < p->arg[0] && p->arg[0] < p->below;
-    if (!(low < high))
-        return false;
-    if (p->family->cdf == NULL)
-        return true;
-    return (isinf(high) ? 1 : p->family->cdf(p->arg, high)) >
-           (isinf(low) ? 0 : p->family->cdf(p->arg, low));
+    return low < high && prior_mass(p) > PRIOR_LEAST_MASS;
 }
 
 /* Cuts that cut nothing off are none. */
@@ -149,6 +144,7 @@ static void check_cuts(struct reader *r, cJSON *tree, struct model *m, const cha
         if (at < 0)
             continue;
         drop_idle_cuts(&prior);
+        prior_settle(&prior);
         prior.on_variance = is_variance(m->parameter[at], item->string);
         m->prior[at] = prior;
     }

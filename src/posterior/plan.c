@@ -15,6 +15,8 @@
  * probability. */
 #define RANGE_TAIL 1e-6
 #define HEAVY 30.0
+/* or, of a number that is positive, where the upper quartile is this many times the lower one */
+#define SPREAD_OUT 1000.0
 /* Proposals from the prior keep all of it within reach; heavy tails need more of them. */
 #define PRIOR_SHARE (1.0 / 64.0)
 #define PRIOR_SHARE_HEAVY 0.25
@@ -42,41 +44,69 @@ double problem_coordinate(const struct problem *p, size_t dim, double u)
                                               : problem_quantile(p->shape_prior[j], u);
 }
 
-/* log: in the coordinate ln x, whose support has no end at 0 */
+/* Ends of the support, log: in the coordinate ln x; kept within numbers that can be squared. */
 static void support_edges(const struct prior *p, bool log, double *low, double *high)
 {
+    const double most = log ? vm_log(PROBLEM_LARGEST) : PROBLEM_LARGEST;
     prior_support(p, low, high);
     if (log) {
         *low = *low > 0.0 ? vm_log(*low) : -INFINITY;
         *high = *high < INFINITY ? vm_log(*high) : INFINITY;
     }
-    if (*low > -INFINITY)
-        *low += INWARD * fabs(*low);
-    if (*high < INFINITY)
-        *high -= INWARD * fabs(*high);
+    *low = *low > -most ? *low : -most;
+    *high = *high < most ? *high : most;
+    *low += INWARD * fabs(*low);
+    *high -= INWARD * fabs(*high);
 }
 
+/* The range of a coordinate dwarfs the middle half of its prior. */
+static bool has_heavy_tails(const struct problem *p, size_t d, const struct coordinate_range *r)
+{
+    const double low = problem_coordinate(p, d, 0.25), high = problem_coordinate(p, d, 0.75);
+    return r->high[d] - r->low[d] > HEAVY * (high - low) ||
+           (p->reflect[d] && high > SPREAD_OUT * low);
+}
+
+static bool is_infinite_at_zero(const struct prior *prior)
+{
+    const double x[2] = {1e-200, 1e-100}, log_x[2] = {vm_log(x[0]), vm_log(x[1])};
+    double density[2];
+    prior_log_density(prior, 2, x, log_x, density);
+    return density[0] > density[1] + 1.0;
+}
+
+static void plan_coordinate(struct plan *plan, size_t d, const struct prior *prior, bool positive)
+{
+    struct problem *p = &plan->problem;
+    const bool log = p->coordinate[p->dim_shape[d]] == COORDINATE_LOG;
+    support_edges(prior, log, &p->edge_low[d], &p->edge_high[d]);
+    p->reflect[d] = !log && positive && p->edge_low[d] <= 0.0;
+    if (p->reflect[d])
+        p->edge_low[d] = 0.0;
+    plan->range.low[d] = p->reflect[d] ? 0.0 : problem_coordinate(p, d, RANGE_TAIL);
+    plan->range.high[d] = problem_coordinate(p, d, 1.0 - RANGE_TAIL);
+    p->heavy[d] = has_heavy_tails(p, d, &plan->range);
+}
+
+/* A positive number that is its own coordinate takes its logarithm where its prior piles up at 0 or
+ * spreads over orders of magnitude. */
 static void plan_shape(struct plan *plan, size_t i)
 {
     struct problem *p = &plan->problem;
     const size_t j = p->shapes++;
     const struct parameter *a = plan->m->parameter[i];
     const struct prior *prior = &plan->m->prior[i];
-    const bool log = a->coordinate == COORDINATE_LOG;
     p->coordinate[j] = a->coordinate;
     p->shape_prior[j] = prior;
     if (prior_is_fixed(prior))
         return;
     const size_t d = p->dims++;
     p->dim_shape[d] = j;
-    support_edges(prior, log, &p->edge_low[d], &p->edge_high[d]);
-    p->reflect[d] = !log && a->positive && p->edge_low[d] <= 0.0;
-    if (p->reflect[d])
-        p->edge_low[d] = 0.0;
-    plan->range.low[d] = p->reflect[d] ? 0.0 : problem_coordinate(p, d, RANGE_TAIL);
-    plan->range.high[d] = problem_coordinate(p, d, 1.0 - RANGE_TAIL);
-    p->heavy[d] = plan->range.high[d] - plan->range.low[d] >
-                  HEAVY * (problem_coordinate(p, d, 0.75) - problem_coordinate(p, d, 0.25));
+    plan_coordinate(plan, d, prior, a->positive);
+    if (p->reflect[d] && (p->heavy[d] || is_infinite_at_zero(prior))) {
+        p->coordinate[j] = COORDINATE_LOG;
+        plan_coordinate(plan, d, prior, a->positive);
+    }
 }
 
 static void plan_residual(struct plan *plan, const struct prior *prior)
@@ -116,7 +146,10 @@ static void plan_linear(struct plan *plan, size_t c, const struct prior *prior, 
     const double quartiles = problem_quantile(prior, 0.75) - problem_quantile(prior, 0.25);
     *mean = isfinite(middle) ? middle : problem_quantile(prior, 0.5);
     *scale = isfinite(sd) && sd > 0.0 ? sd : WIDE * quartiles;
+    double low, high;
+    prior_support(prior, &low, &high);
     p->weighed = true;
+    p->cliffs = p->cliffs || low > -INFINITY || high < INFINITY;
     p->exact[c] = prior;
     p->stand_in_mean[c] = *mean;
     p->stand_in_sd[c] = *scale;
@@ -189,10 +222,8 @@ static void plan_parameters(struct plan *plan)
     p->slopes = p->chain ? 0 : columns - 1;
 }
 
-enum status plan_new(struct plan **out, const struct design *d, const struct model *m,
-                     struct err *e)
+struct plan *plan_new(const struct design *d, const struct model *m)
 {
-    (void)e;
     struct plan *plan = mem_new(1, sizeof *plan);
     plan->d = d;
     plan->m = m;
@@ -213,8 +244,7 @@ enum status plan_new(struct plan **out, const struct design *d, const struct mod
         plan_chain(plan);
     p->prior_share = p->heavy[0] || p->heavy[1] ? PRIOR_SHARE_HEAVY : PRIOR_SHARE;
     plan->moments = wants_moments(d) && !p->weighed;
-    *out = plan;
-    return STATUS_OK;
+    return plan;
 }
 
 void plan_free(struct plan *plan)

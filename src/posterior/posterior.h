@@ -50,10 +50,8 @@ struct convergence {
 struct plan;
 struct posterior;
 
-/* A model made ready for fits. STATUS_INPUT (with the design's file and JSON pointers) for what
- * this version cannot fit. `d` and `m` must outlive the plan. */
-enum status plan_new(struct plan **out, const struct design *d, const struct model *m,
-                     struct err *e);
+/* A model made ready for fits. `d` and `m` must outlive the plan. */
+struct plan *plan_new(const struct design *d, const struct model *m);
 void plan_free(struct plan *p);
 
 struct posterior *posterior_new(const struct plan *p);

@@ -55,6 +55,7 @@ struct problem {
     double mean[COLUMNS_MAX], scale[COLUMNS_MAX]; /* of beta; [0]: intercept, or the chain's start;
                                                      [1]: second order's first step */
     bool weighed;                                 /* some linear prior is not normal */
+    bool cliffs; /* some of those have an end where the density jumps */
     const struct prior *exact[COLUMNS_MAX + 1]; /* those priors by coefficient, last the control's;
                                                    NULL: normal or fixed */
     double stand_in_mean[COLUMNS_MAX + 1], stand_in_sd[COLUMNS_MAX + 1];

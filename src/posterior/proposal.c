@@ -454,7 +454,7 @@ static void box_by_probability(struct proposal *q, const struct problem *p, size
     kept_range(q, w->weight, largest(w->weight, count, &best), d, &first, &last);
     const double low = first == 0 ? OUTER : (double)first - 0.5;
     const double high = last == nodes - 1 ? (double)nodes - OUTER : (double)last + 1.5;
-    box->low[d] = p->reflect[d] ? 0.0 : problem_coordinate(p, d, low / (double)nodes);
+    box->low[d] = problem_coordinate(p, d, low / (double)nodes);
     box->high[d] = problem_coordinate(p, d, high / (double)nodes);
     if (p->sd_free)
         start_v(p, w);

@@ -10,7 +10,7 @@
 
 /* Axes at most; log units below the maximum that belong to the box; passes of the zoom; reach of
  * the standard normals of a binary endpoint. */
-enum { AXES_MAX = 3, PASSES = 8, REACH = 4, V_REACH = 20 };
+enum { AXES_MAX = 3, PASSES = 8, REACH = 4, V_REACH = 20, BEND = 4 };
 #define KEEP 18.0
 #define NORMAL_REACH 9.0
 
@@ -18,8 +18,10 @@ enum { AXES_MAX = 3, PASSES = 8, REACH = 4, V_REACH = 20 };
 static const size_t scan_cells[AXES_MAX + 1] = {1, 64, 40, 24};
 static const size_t final_cells[AXES_MAX + 1] = {1, 8192, 448, 80};
 
+/* In t, where the coordinate is middle + scale sinh(t), or t itself with scale 0. */
 struct axis {
     double low, high, floor, ceiling;
+    double middle, scale;
 };
 
 struct grid {
@@ -36,9 +38,10 @@ static size_t axis_count(const struct problem *p)
     return p->dims + (p->sd_free ? 1 : 0) + (problem_draws_first(p) ? problem_normal_rows(p) : 0);
 }
 
+/* A jump of the density inside the grid would cost it its accuracy. */
 bool quadrature_reaches(const struct problem *p)
 {
-    return axis_count(p) <= AXES_MAX;
+    return axis_count(p) <= AXES_MAX && !p->cliffs;
 }
 
 static double *block(size_t rows)
@@ -90,6 +93,27 @@ static double most(double a, double b)
     return a > b ? a : b;
 }
 
+static double within(double x, double low, double high)
+{
+    return least(most(x, low), high);
+}
+
+static double asinh_of(double x)
+{
+    const double size = vm_log(fabs(x) + sqrt(x * x + 1.0));
+    return x < 0.0 ? -size : size;
+}
+
+/* Cells small around the middle, wide in far tails. */
+static void bend(struct axis *x, double middle, double scale)
+{
+    double *const ends[] = {&x->low, &x->high, &x->floor, &x->ceiling};
+    x->middle = middle;
+    x->scale = scale;
+    for (size_t i = 0; i < sizeof ends / sizeof *ends; i++)
+        *ends[i] = asinh_of((*ends[i] - middle) / scale);
+}
+
 /* A coordinate runs over its prior's range; a heavy-tailed one around the proposal's box (the zoom
  * widens it where an edge holds mass). One that reflects at 0 runs as c = t^3: cells are small
  * where such posteriors are steep.
@@ -101,13 +125,21 @@ static struct axis shape_axis(const struct problem *p, const struct proposal *q,
     const double high =
         p->heavy[d] ? q->high[d] + REACH * width : most(q->high[d] + q->step[d], r->high[d]);
     if (p->reflect[d])
-        return (struct axis){0.0, cube_root(least(high, ceiling)), 0.0,
-                             cube_root(least(2.0 * high, ceiling))};
+        return (struct axis){0.0, cube_root(least(high, ceiling)),
+                             0.0, cube_root(least(2.0 * high, ceiling)),
+                             0.0, 0.0};
     const double low =
         p->heavy[d] ? q->low[d] - REACH * width : least(q->low[d] - q->step[d], r->low[d]);
     const double room = high - low, floor = p->edge_low[d];
-    return (struct axis){most(low, floor), least(high, ceiling), most(low - room, floor),
-                         least(high + room, ceiling)};
+    struct axis x = {most(low, floor),
+                     least(high, ceiling),
+                     most(low - room, floor),
+                     least(high + room, ceiling),
+                     0.0,
+                     0.0};
+    if (p->coordinate[p->dim_shape[d]] == COORDINATE_SELF)
+        bend(&x, q->mode[d], width / BEND);
+    return x;
 }
 
 /* The prior's range, and where the proposal saw the likelihood, however far apart they are. */
@@ -123,8 +155,12 @@ static struct axis v_axis(const struct problem *p, const struct proposal *q,
         high = most(high, c->mode + V_REACH * c->scale);
     }
     const double floor = p->v_edge_low, ceiling = p->v_edge_high, room = high - low;
-    return (struct axis){most(low, floor), least(high, ceiling), most(low - room, floor),
-                         least(high + room, ceiling)};
+    return (struct axis){most(low, floor),
+                         least(high, ceiling),
+                         most(low - room, floor),
+                         least(high + room, ceiling),
+                         0.0,
+                         0.0};
 }
 
 static void grid_axes(struct grid *g, const struct proposal *q, const struct coordinate_range *r)
@@ -136,7 +172,8 @@ static void grid_axes(struct grid *g, const struct proposal *q, const struct coo
     if (p->sd_free)
         g->axis[a++] = v_axis(p, q, r);
     while (a < g->axes)
-        g->axis[a++] = (struct axis){-NORMAL_REACH, NORMAL_REACH, -NORMAL_REACH, NORMAL_REACH};
+        g->axis[a++] =
+            (struct axis){-NORMAL_REACH, NORMAL_REACH, -NORMAL_REACH, NORMAL_REACH, 0.0, 0.0};
 }
 
 /* where axis a's coordinates of the block stand */
@@ -171,28 +208,43 @@ static size_t cell_index(const struct grid *g, size_t cell, size_t a)
     return cell % g->cells;
 }
 
-/* t -> t^3 where a coordinate reflects; log of the Jacobian 3 t^2 into `jacobian` (NULL: not
- * wanted) */
-static void place_reflecting(struct grid *g, double *jacobian)
+/* c = t^3 where a coordinate reflects, middle + scale sinh(t) where its axis is bent; jacobian[i]
+ * *= dc / dt */
+static void place_axis(struct grid *g, size_t d, double *jacobian)
 {
-    for (size_t i = 0; jacobian && i < BLOCK; i++)
+    const struct axis *x = &g->axis[d];
+    double *c = g->pt.coord[d], e[BLOCK];
+    if (g->p->reflect[d]) {
+        for (size_t i = 0; i < BLOCK; i++) {
+            const double t = c[i];
+            c[i] = t * t * t;
+            jacobian[i] *= 3.0 * t * t;
+        }
+    } else if (x->scale > 0.0) {
+        g->p->math->exp(BLOCK, c, e);
+        for (size_t i = 0; i < BLOCK; i++) {
+            c[i] = within(x->middle + x->scale * 0.5 * (e[i] - 1.0 / e[i]), g->p->edge_low[d],
+                          g->p->edge_high[d]);
+            jacobian[i] *= x->scale * 0.5 * (e[i] + 1.0 / e[i]);
+        }
+    }
+}
+
+/* coordinates from t, and the log of their Jacobian */
+static void place_coordinates(struct grid *g, double *jacobian)
+{
+    for (size_t i = 0; i < BLOCK; i++)
         jacobian[i] = 1.0;
     for (size_t d = 0; d < g->p->dims; d++)
-        for (size_t i = 0; g->p->reflect[d] && i < BLOCK; i++) {
-            const double t = g->pt.coord[d][i];
-            g->pt.coord[d][i] = t * t * t;
-            if (jacobian)
-                jacobian[i] *= 3.0 * t * t;
-        }
-    if (jacobian)
-        g->p->math->log(BLOCK, jacobian, jacobian);
+        place_axis(g, d, jacobian);
+    g->p->math->log(BLOCK, jacobian, jacobian);
 }
 
 static void evaluate(struct grid *g)
 {
     const struct problem *p = g->p;
     double jacobian[BLOCK];
-    place_reflecting(g, jacobian);
+    place_coordinates(g, jacobian);
     density_at(p, &g->pt);
     for (size_t i = 0; i < BLOCK; i++)
         g->value[i] = g->pt.log_prior[i] + g->pt.log_m[i] + jacobian[i];
@@ -300,7 +352,8 @@ static bool accumulate(const struct problem *p, double *weight, size_t total)
 static void write_block(struct grid *g, const struct draw_rows *out, size_t at)
 {
     const struct problem *p = g->p;
-    place_reflecting(g, NULL);
+    double jacobian[BLOCK];
+    place_coordinates(g, jacobian);
     density_at(p, &g->pt);
     if (!problem_draws_first(p)) {
         p->kernel->normals(&g->rng, (problem_normal_rows(p)) * BLOCK, g->normal);

@@ -54,6 +54,18 @@ void slice_free(struct slice *s)
     mem_free(s);
 }
 
+/* Whether the coordinates of lane i lie between the ends of their priors' supports. */
+static bool is_inside(const struct slice *s, size_t i)
+{
+    const struct problem *p = &s->p;
+    for (size_t d = 0; d < p->dims; d++) {
+        const double c = p->reflect[d] ? fabs(s->pt.coord[d][i]) : s->pt.coord[d][i];
+        if (c < p->edge_low[d] || c > p->edge_high[d])
+            return false;
+    }
+    return !p->sd_free || (s->pt.v[i] >= p->v_edge_low && s->pt.v[i] <= p->v_edge_high);
+}
+
 /* log density at the points' coordinates and these normals (binary), NaN counting as impossible */
 static void evaluate(struct slice *s, const double *normals, double *out)
 {
@@ -69,7 +81,7 @@ static void evaluate(struct slice *s, const double *normals, double *out)
     density_correction(p, N, s->theta, s->beta, extra);
     for (size_t i = 0; i < N; i++) {
         out[i] = s->pt.log_prior[i] + s->pt.log_m[i] + extra[i];
-        if (!(out[i] < INFINITY))
+        if (!(out[i] < INFINITY) || !is_inside(s, i))
             out[i] = -INFINITY;
     }
 }

@@ -121,7 +121,7 @@ static void write_targets(struct json_writer *w, const struct check_report *r)
         json_key(w, d->target[t].name);
         json_open(w, '{');
         json_key_string(w, "sentence", text_s(&s));
-        json_key_maybe(w, "prior_pr_none", r->prior ? r->prior->target[t].pr_none : NAN);
+        json_key_maybe(w, "prior_pr_none", r->prior->target[t].pr_none);
         json_close(w);
         text_release(&s);
     }
@@ -135,7 +135,7 @@ static void write_priors(struct json_writer *w, const struct check_report *r)
     json_open(w, '[');
     for (size_t i = 0; i < m->parameters; i++) {
         const struct prior *p = &m->prior[i];
-        bool known = !prior_is_fixed(p) && prior_is_computable(p);
+        bool known = !prior_is_fixed(p);
         struct text s = TEXT_INIT;
         say_prior(&s, p);
         json_open(w, '{');
@@ -148,7 +148,6 @@ static void write_priors(struct json_writer *w, const struct check_report *r)
         text_release(&s);
     }
     json_close(w);
-    json_key_string(w, "prior_note", r->prior ? NULL : r->prior_fault);
 }
 
 static void write_cut(struct json_writer *w, size_t number, bool last,

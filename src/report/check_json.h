@@ -10,7 +10,6 @@
  *                          "pr_positive", "pr_target": {TARGET: p}, "pr_meets": {TARGET: p}}}],
  *    "targets": {TARGET: {"sentence", "prior_pr_none"}},
  *    "priors": [{"name", "sentence", "q05", "q50", "q95"}],
- *    "prior_note": why `prior` and `prior_pr_none` are null, else null,
  *    "analyses": {"counted", "enrolment_end", "adapts_from",
  *                 "expected": [{"analysis", "last", "point", "held", "time", "randomized",
  *                               "observed", "pending", "dropped"}]},

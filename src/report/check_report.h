@@ -26,7 +26,6 @@ struct check_report {
     const struct design *d;
     const struct analysis *prior;    /* NULL: this version cannot compute these priors */
     const struct prior_bands *bands; /* with `prior` */
-    const char *prior_fault;         /* why not, without `prior` */
     const struct expected *expected;
     const struct check_notes *notes;
 };

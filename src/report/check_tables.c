@@ -61,7 +61,7 @@ void check_table_priors(struct text *out, const struct check_report *r)
         say_prior(table_open(c), p);
         table_next(c);
         for (size_t j = 0; j < 3; j++) {
-            bool known = !prior_is_fixed(p) && prior_is_computable(p);
+            bool known = !prior_is_fixed(p);
             add_number(c, known ? prior_quantile(p, q[j]) : NAN);
         }
     }

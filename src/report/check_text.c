@@ -80,10 +80,6 @@ static void add_model(const struct writer *w)
     text_add(w->out, "\n");
     check_table_priors(w->out, w->r);
     heading(w, "What the priors imply before any data");
-    if (!w->r->prior) {
-        wrap_add(w->out, "  ", w->r->prior_fault);
-        return;
-    }
     check_table_responses(w->out, w->r);
     if (w->r->d->targets > 0) {
         text_add(w->out, "\n");

@@ -119,12 +119,12 @@ static double error_of(struct analysis *a, struct analyst *w, const struct level
 static void run_case(const struct bench_case *c)
 {
     struct design *d = design_for(c);
-    struct err e = ERR_INIT;
     struct analyst *w;
     struct analysis a;
     struct level_data x;
-    if (!d || analyst_new(&w, d, &e) != STATUS_OK)
+    if (!d)
         return;
+    w = analyst_new(d);
     analysis_init(&a, d);
     level_data_init(&x, LEVELS);
     fill(&x);

@@ -49,13 +49,12 @@ static double *normal_draws(size_t n, uint64_t salt, double shift)
     return x;
 }
 
-enum status plan_new(struct plan **out, const struct design *d, const struct model *m,
-                     struct err *e)
+struct plan *plan_new(const struct design *d, const struct model *m)
 {
-    (void)m, (void)e;
-    *out = mem_new(1, sizeof **out);
-    (*out)->d = d;
-    return STATUS_OK;
+    struct plan *plan = mem_new(1, sizeof *plan);
+    (void)m;
+    plan->d = d;
+    return plan;
 }
 
 void plan_free(struct plan *p)

@@ -71,7 +71,7 @@ static void run(const struct world *w, const struct design *d, size_t replicates
 {
     struct err e = ERR_INIT;
     struct plan *plan = NULL;
-    CU_ASSERT_EQUAL_FATAL(plan_new(&plan, d, &d->model, &e), STATUS_OK);
+    plan = plan_new(d, &d->model);
     struct posterior *prior = posterior_new(plan), *p = posterior_new(plan);
     const struct draws truths = posterior_prior(prior, replicates, (struct rng_key){.seed = 5});
     struct level_data x;

@@ -20,9 +20,7 @@ static void judge(const char *name, struct err *e)
     struct design *d;
 
     text_addf(&file, "%s.json", name);
-    if (design_parse(&d, text_s(&bytes), bytes.length, text_s(&file), &terrace_vocabulary, e) ==
-        STATUS_OK)
-        design_check_analysable(d, e);
+    (void)design_parse(&d, text_s(&bytes), bytes.length, text_s(&file), &terrace_vocabulary, e);
     design_free(d);
     text_release(&bytes);
     text_release(&file);

@@ -292,25 +292,6 @@ static void resolved_hash(void)
     design_free(c);
 }
 
-static void analysable(void)
-{
-    static const char *const names[] = {"itch", "minimal", "minimal_binary", "goal"};
-    struct err e = ERR_INIT;
-    struct design *d;
-
-    for (size_t i = 0; i < sizeof names / sizeof names[0]; i++) {
-        d = read_good(names[i]);
-        CU_ASSERT_EQUAL(design_check_analysable(d, &e), STATUS_OK);
-        design_free(d);
-    }
-    CU_ASSERT_EQUAL(e.count, 0);
-    d = read_good("off_curve");
-    CU_ASSERT_EQUAL(design_check_analysable(d, &e), STATUS_INPUT);
-    CU_ASSERT_EQUAL(e.count, 7); /* 3 families, 3 cuts, sensitivity */
-    design_free(d);
-    err_release(&e);
-}
-
 static const struct unit_test tests[] = {
     {"continuous design of the interface", itch},
     {"binary design by duration", antibiotic},
@@ -322,7 +303,6 @@ static const struct unit_test tests[] = {
     {"planned points that are held", planned_points},
     {"the resolved form reads back as itself", resolved_form},
     {"the resolved hash ignores notes and defaults written out", resolved_hash},
-    {"what this version analyzes", analysable},
     UNIT_END};
 
 int main(void)

@@ -215,7 +215,7 @@ static struct posterior *fitted(struct design *d, const struct observed *o, stru
 {
     struct err e = ERR_INIT;
     *x = as_level_data(o, copy);
-    CU_ASSERT_EQUAL_FATAL(plan_new(plan, d, &d->model, &e), STATUS_OK);
+    *plan = plan_new(d, &d->model);
     struct posterior *p = posterior_new(*plan);
     CU_ASSERT_EQUAL_FATAL(posterior_start(p, x, (struct rng_key){.seed = 3}, &e), STATUS_OK);
     return p;
