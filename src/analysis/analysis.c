@@ -60,6 +60,11 @@ int analysis_true_level(const struct design *d, size_t target, const double *res
     return target_true_level(d, &d->target[target], response);
 }
 
+bool parameter_set_by_prior(const struct parameter_result *x)
+{
+    return x->sd_over_prior_sd > 0.9;
+}
+
 /* ---- life cycle of an analysis ---- */
 
 static void level_init(struct level_result *x, size_t targets)
@@ -75,7 +80,8 @@ void analysis_init(struct analysis *a, const struct design *d)
     *a = (struct analysis){.levels = d->levels,
                            .targets = d->targets,
                            .parameters = d->model.parameters,
-                           .decisions = d->decisions};
+                           .decisions = d->decisions,
+                           .model = &d->model};
     a->level = mem_new(d->levels, sizeof *a->level);
     a->target = mem_new(d->targets, sizeof *a->target);
     a->parameter = mem_new(a->parameters, sizeof *a->parameter);

@@ -59,6 +59,9 @@ struct decision_result {
     struct condition_result *condition; /* owned; as many as the decision has */
 };
 
+/* Posterior sd / prior sd above 0.9: what is said of the parameter comes from its prior. */
+bool parameter_set_by_prior(const struct parameter_result *x);
+
 enum recommendation {
     RECOMMEND_CONTINUE,
     RECOMMEND_STOP_SUCCESS,
@@ -75,6 +78,7 @@ const char *recommendation_sentence(enum recommendation r); /* for people */
 struct curve_result {
     size_t points;
     double *value, *mean, *q025, *q975; /* owned; response scale */
+    double *likelihood; /* owned; the likelihood fit at the same values; NaN where there is none */
 };
 
 struct analysis_diagnostics {
@@ -111,6 +115,7 @@ struct analysis {
     size_t sensitivities;
     struct analysis *sensitivity;
     const struct model *model; /* the model of these figures; borrowed from the design */
+    char *failure; /* owned; why a sensitivity model could not be fitted, its numbers being NaN */
 };
 
 struct analysis_request {

@@ -2,6 +2,8 @@
 /* mean_curve.c: the posterior of the mean curve between the levels, for the figure. */
 #include "analysis/mean_curve.h"
 
+#include <math.h>
+
 #include "base/mem.h"
 #include "base/vecmath.h"
 #include "posterior/diagnostics.h"
@@ -38,7 +40,7 @@ void mean_curve_fill(struct curve_result *out, const struct plan *p, const struc
         return;
     if (used.n > DRAWS_MOST)
         used.n = DRAWS_MOST;
-    double **arrays[] = {&out->value, &out->mean, &out->q025, &out->q975};
+    double **arrays[] = {&out->value, &out->mean, &out->q025, &out->q975, &out->likelihood};
     for (size_t i = 0; i < sizeof arrays / sizeof *arrays; i++)
         *arrays[i] = mem_new(POINTS, sizeof(double));
     out->points = POINTS;
@@ -48,6 +50,8 @@ void mean_curve_fill(struct curve_result *out, const struct plan *p, const struc
 #pragma omp parallel for schedule(dynamic) num_threads(threads)
     for (size_t i = 0; i < POINTS; i++)
         fill_point(out, i, p, d, &used);
+    for (size_t i = 0; i < POINTS; i++)
+        out->likelihood[i] = NAN;
 }
 
 void mean_curve_release(struct curve_result *c)
@@ -56,5 +60,6 @@ void mean_curve_release(struct curve_result *c)
     mem_free(c->mean);
     mem_free(c->q025);
     mem_free(c->q975);
-    *c = (struct curve_result){0, NULL, NULL, NULL, NULL};
+    mem_free(c->likelihood);
+    *c = (struct curve_result){0, NULL, NULL, NULL, NULL, NULL};
 }

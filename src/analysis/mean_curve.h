@@ -5,8 +5,8 @@
 
 #include "analysis/analysis.h"
 
-/* 61 points over the levels on the curve, response scale; points = 0 for curves without a formula.
- * What *out held is released. */
+/* 61 points over the levels on the curve, response scale; points = 0 for curves without a formula;
+ * `likelihood` is NaN. What *out held is released. */
 void mean_curve_fill(struct curve_result *out, const struct plan *p, const struct design *d,
                      const struct draws *draws, int threads);
 void mean_curve_release(struct curve_result *c);

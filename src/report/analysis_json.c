@@ -5,38 +5,8 @@
 
 #include <math.h>
 
-#include "analysis/raw_interval.h"
 #include "base/base.h"
-#include "base/json_write.h"
-
-static void key_open(struct json_writer *w, const char *key, char bracket)
-{
-    json_key(w, key);
-    json_open(w, bracket);
-}
-
-static void key_open_inline(struct json_writer *w, const char *key, char bracket)
-{
-    json_key(w, key);
-    json_open_inline(w, bracket);
-}
-
-static void strings(struct json_writer *w, const char *key, size_t n, char *const *list)
-{
-    key_open(w, key, '[');
-    for (size_t i = 0; i < n; i++)
-        json_string(w, list[i]);
-    json_close(w);
-}
-
-static void spread_keys(struct json_writer *w, const struct spread *s)
-{
-    json_key_maybe(w, "mean", s->mean);
-    json_key_maybe(w, "sd", s->sd);
-    json_key_maybe(w, "q025", s->q025);
-    json_key_maybe(w, "q50", s->q50);
-    json_key_maybe(w, "q975", s->q975);
-}
+#include "report/results_json.h"
 
 /* A verdict that must not be acted upon when the computation is not trusted. */
 static void key_verdict(struct json_writer *w, const struct analysis_report *r, const char *key,
@@ -64,12 +34,12 @@ static void head(struct json_writer *w, const struct analysis_report *r)
 
 static void design_and_data(struct json_writer *w, const struct analysis_report *r)
 {
-    key_open(w, "design", '{');
+    json_key_open(w, "design", '{');
     json_key_string(w, "title", r->d->title);
     json_key_string(w, "sha256", r->d->sha256);
     json_key_string(w, "resolved_sha256", r->d->resolved_sha256);
     json_close(w);
-    key_open(w, "data", '{');
+    json_key_open(w, "data", '{');
     json_key_string(w, "sha256", r->data->sha256);
     json_key_number(w, "subjects", (double)r->data->subjects);
     json_key_number(w, "observed", r->data->observed);
@@ -77,42 +47,15 @@ static void design_and_data(struct json_writer *w, const struct analysis_report 
     json_key_number(w, "dropped", r->data->dropped);
     json_key_maybe(w, "dropped_as_failure", r->data->dropped_as_failure);
     if (r->data->warnings > 0)
-        strings(w, "warnings", r->data->warnings, r->data->warning);
+        json_key_strings(w, "warnings", r->data->warnings, r->data->warning);
     json_close(w);
     json_key_number(w, "seed", (double)r->seed);
-}
-
-static void raw(struct json_writer *w, const struct analysis_report *r, size_t k)
-{
-    const struct raw_figures f = raw_interval(&r->data->by_level, r->d->type, k);
-    key_open_inline(w, "raw", '{');
-    if (r->d->type == ENDPOINT_BINARY) {
-        json_key_number(w, "events", r->data->by_level.events[k]);
-        json_key_maybe(w, "rate", f.mean);
-    } else {
-        json_key_maybe(w, "mean", f.mean);
-        json_key_maybe(w, "sd", f.sd);
-    }
-    json_close(w);
-}
-
-static void gain(struct json_writer *w, const struct analysis_report *r,
-                 const struct level_result *l)
-{
-    if (!design_has_gain(r->d)) {
-        json_key_null(w, "gain");
-        return;
-    }
-    key_open_inline(w, "gain", '{');
-    spread_keys(w, &l->gain);
-    json_key_maybe(w, "pr_positive", l->pr_positive);
-    json_close(w);
 }
 
 static void by_target(struct json_writer *w, const struct analysis_report *r, const char *key,
                       const double *p)
 {
-    key_open_inline(w, key, '{');
+    json_key_open_inline(w, key, '{');
     for (size_t t = 0; t < r->a->targets; t++)
         json_key_maybe(w, r->d->target[t].name, p[t]);
     json_close(w);
@@ -129,11 +72,9 @@ static void level(struct json_writer *w, const struct analysis_report *r, size_t
         json_key_bool(w, "closed", true);
     json_key_number(w, "randomized", r->data->by_level.randomized[k]);
     json_key_number(w, "observed", r->data->by_level.n[k]);
-    raw(w, r, k);
-    key_open_inline(w, "response", '{');
-    spread_keys(w, &l->response);
-    json_close(w);
-    gain(w, r, l);
+    json_raw(w, r, k);
+    json_response(w, l);
+    json_gain(w, r, l);
     by_target(w, r, "pr_target", l->pr_target);
     by_target(w, r, "pr_meets", l->pr_meets);
     json_key_maybe(w, "next_share", r->a->diagnostics.trusted ? l->next_share : NAN);
@@ -143,26 +84,13 @@ static void level(struct json_writer *w, const struct analysis_report *r, size_t
 static void target(struct json_writer *w, const struct analysis_report *r, size_t t)
 {
     const struct target_result *x = &r->a->target[t];
-    key_open_inline(w, r->d->target[t].name, '{');
+    json_key_open_inline(w, r->d->target[t].name, '{');
     json_key_string(w, "selected", x->selected >= 0 ? r->d->level[x->selected].label : NULL);
     json_key_maybe(w, "pr_selected", x->pr_selected);
     json_key_maybe(w, "pr_none", x->pr_none);
     json_key_maybe(w, "mcse", x->mcse);
     json_key_bool(w, "close", x->close);
     json_key_bool(w, "imprecise", x->imprecise);
-    json_close(w);
-}
-
-static void parameter(struct json_writer *w, const struct parameter_result *p)
-{
-    json_open_inline(w, '{');
-    json_key_string(w, "name", p->name);
-    spread_keys(w, &p->value);
-    json_key_maybe(w, "rhat", p->diag.rhat);
-    json_key_maybe(w, "ess_bulk", p->diag.ess_bulk);
-    json_key_maybe(w, "ess_tail", p->diag.ess_tail);
-    json_key_maybe(w, "mcse_mean", p->diag.mcse_mean);
-    json_key_maybe(w, "sd_over_prior_sd", p->sd_over_prior_sd);
     json_close(w);
 }
 
@@ -215,7 +143,7 @@ static void verdict(struct json_writer *w, const struct analysis_report *r,
     key_verdict(w, r, "met", x->met);
     if (when->join != JOIN_ONE)
         json_key_string(w, "join", when->join == JOIN_ALL ? "all" : "any");
-    key_open(w, "conditions", '[');
+    json_key_open(w, "conditions", '[');
     for (size_t i = 0; i < when->count; i++)
         condition(w, r, &when->list[i], &x->condition[i]);
     json_close(w);
@@ -223,7 +151,7 @@ static void verdict(struct json_writer *w, const struct analysis_report *r,
 
 static void decisions(struct json_writer *w, const struct analysis_report *r)
 {
-    key_open(w, "decisions", '[');
+    json_key_open(w, "decisions", '[');
     for (size_t i = 0; i < r->a->decisions; i++) {
         json_open(w, '{');
         json_key_string(w, "action", action_key(r->d->decision[i].action));
@@ -234,54 +162,23 @@ static void decisions(struct json_writer *w, const struct analysis_report *r)
     }
     json_close(w);
     if (r->a->final_success.condition) {
-        key_open(w, "final_success", '{');
+        json_key_open(w, "final_success", '{');
         verdict(w, r, &r->d->final_success, &r->a->final_success);
         json_close(w);
     }
 }
 
-static void second_method(struct json_writer *w, const struct analysis_diagnostics *g)
-{
-    if (!g->second_name) {
-        json_key_null(w, "second_method");
-        return;
-    }
-    key_open_inline(w, "second_method", '{');
-    json_key_string(w, "name", g->second_name);
-    json_key_maybe(w, "max_difference", g->second_difference);
-    json_close(w);
-}
-
-static void diagnostics(struct json_writer *w, const struct analysis_diagnostics *g)
-{
-    key_open(w, "diagnostics", '{');
-    json_key_number(w, "chains", (double)g->chains);
-    json_key_number(w, "draws", (double)g->draws);
-    json_key_maybe(w, "max_rhat", g->max_rhat);
-    json_key_maybe(w, "min_ess_bulk", g->min_ess_bulk);
-    json_key_maybe(w, "kish", g->kish);
-    second_method(w, g);
-    json_key_null(w, "lack_of_fit_p");
-    json_key_bool(w, "trusted", g->trusted);
-    json_key_bool(w, "imprecise", g->imprecise);
-    strings(w, "warnings", g->warnings, g->warning);
-    json_close(w);
-}
-
 static void results(struct json_writer *w, const struct analysis_report *r)
 {
-    key_open(w, "levels", '[');
+    json_key_open(w, "levels", '[');
     for (size_t k = 0; k < r->a->levels; k++)
         level(w, r, k);
     json_close(w);
-    key_open(w, "targets", '{');
+    json_key_open(w, "targets", '{');
     for (size_t t = 0; t < r->a->targets; t++)
         target(w, r, t);
     json_close(w);
-    key_open(w, "parameters", '[');
-    for (size_t p = 0; p < r->a->parameters; p++)
-        parameter(w, &r->a->parameter[p]);
-    json_close(w);
+    json_parameters(w, r->a);
 }
 
 void analysis_json(struct text *out, const struct analysis_report *r)
@@ -294,13 +191,13 @@ void analysis_json(struct text *out, const struct analysis_report *r)
     head(&w, r);
     design_and_data(&w, r);
     results(&w, r);
-    json_key_null(&w, "likelihood_fit");
+    json_likelihood(&w, &r->a->likelihood);
     decisions(&w, r);
     json_key_string(&w, "recommendation", recommendation_key(said));
-    diagnostics(&w, &r->a->diagnostics);
+    json_diagnostics(&w, &r->a->diagnostics);
     if (r->a->notes > 0)
-        strings(&w, "notes", r->a->notes, r->a->note);
-    key_open_inline(&w, "sensitivity", '[');
+        json_key_strings(&w, "notes", r->a->notes, r->a->note);
+    json_key_open_inline(&w, "sensitivity", '[');
     json_close(&w);
     json_close(&w);
     text_add(out, "\n");

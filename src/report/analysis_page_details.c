@@ -5,18 +5,29 @@
 
 #include "base/base.h"
 #include "base/number.h"
-#include "report/analysis_tables.h"
 #include "report/analysis_words.h"
 #include "report/figures.h"
+#include "report/fit_words.h"
 #include "report/page.h"
+#include "report/parameter_tables.h"
 
 static void parameters(struct text *out, const struct analysis_report *r)
 {
     page_section_open(out, "parameters", "Parameters of the model");
-    page_table(out, table_parameters(r),
-               "Posterior of every parameter, with the checks of its draws. ESS: effective number "
-               "of draws; MC error: Monte Carlo standard error of the mean. SD / prior SD near 1 "
-               "says that the data have taught little beyond the prior.");
+    struct text t = TEXT_INIT;
+    page_table(out, table_parameters(r->a, PARAMETER_VALUES | PARAMETER_DRAWS),
+               likelihood_is_shown(r->a)
+                   ? "Likelihood estimate with its standard error (SE), posterior with its median "
+                     "(50%) and 95% interval, prior, and the checks of the draws. ESS: effective "
+                     "number of draws; MC error: Monte Carlo standard error of the mean. SD / "
+                     "prior SD above 0.9 says that the parameter is set by its prior."
+                   : "Posterior of every parameter with its median (50%) and 95% interval, prior, "
+                     "and the checks of the draws. ESS: effective number of draws; MC error: "
+                     "Monte Carlo standard error of the mean. SD / prior SD above 0.9 says that "
+                     "the parameter is set by its prior.");
+    words_likelihood(&t, r->a);
+    page_paragraph(out, NULL, text_s(&t));
+    text_release(&t);
     page_section_close(out);
 }
 
@@ -53,6 +64,9 @@ static void computation(struct text *out, const struct analysis_report *r)
     table_next(t);
     table_cell(t, "Largest difference from the second method");
     figure_error(table_open(t), g->second_difference);
+    table_next(t);
+    table_cell(t, "Fit of the level means (posterior predictive p)");
+    figure_number(table_open(t), g->lack_of_fit_p, (struct digits){3, 0});
     table_next(t);
     row(t, "Trusted", g->trusted ? "yes" : "no");
     row(t, "As precise as asked", g->imprecise ? "no" : "yes");

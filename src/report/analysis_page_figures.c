@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* analysis_page_figures.c: the figures of report.html, each with its data table: response by level,
- * one figure a target, allocation, decisions. */
+/* analysis_page_figures.c: the figures of report.html, each with its data table: response by level
+ * (page_response.c), one figure a target, allocation, decisions. */
 #include "report/analysis_page.h"
 
 #include <math.h>
@@ -11,156 +11,7 @@
 #include "report/chart.h"
 #include "report/figures.h"
 #include "report/page.h"
-
-/* Arrays by level for the charts, all in one block: column c starts at c * (levels + 1), the last
- * entry of a column being the "no level" column. */
-enum { COLUMNS = 8 };
-struct sheet {
-    const struct analysis_report *r;
-    size_t n;
-    double *column[COLUMNS];
-    double *value;
-    const char **label;
-    struct text level_title;
-    int figure; /* number of the next figure */
-};
-
-static void raise_first(struct text *t)
-{
-    if (t->length > 0 && t->s[0] >= 'a' && t->s[0] <= 'z')
-        t->s[0] = (char)(t->s[0] - 'a' + 'A');
-}
-
-static void sheet_init(struct sheet *s, const struct analysis_report *r)
-{
-    *s = (struct sheet){.r = r, .n = r->a->levels, .figure = 1, .level_title = TEXT_INIT};
-    for (size_t c = 0; c < COLUMNS; c++)
-        s->column[c] = mem_new(s->n + 1, sizeof **s->column);
-    s->value = mem_new(s->n, sizeof *s->value);
-    s->label = mem_new(s->n, sizeof *s->label);
-    for (size_t k = 0; k < s->n; k++) {
-        s->value[k] = r->d->level[k].value;
-        s->label[k] = r->d->level[k].label;
-    }
-    text_add(&s->level_title, r->d->quantity);
-    raise_first(&s->level_title);
-    if (r->d->unit && r->d->unit[0])
-        text_addf(&s->level_title, " (%s)", r->d->unit);
-}
-
-static void sheet_release(struct sheet *s)
-{
-    for (size_t c = 0; c < COLUMNS; c++)
-        mem_free(s->column[c]);
-    mem_free(s->value);
-    mem_free(s->label);
-    text_release(&s->level_title);
-}
-
-static struct chart_levels chart_of(const struct sheet *s, int marked, const char *extra)
-{
-    return (struct chart_levels){s->n, s->label, s->value, text_s(&s->level_title), marked, extra};
-}
-
-static void fill(struct sheet *s, size_t column, const char *key, bool upper)
-{
-    const struct level_figure *f = level_figure_find(key);
-    for (size_t k = 0; k < s->n; k++)
-        s->column[column][k] = upper ? f->upper(s->r, k) : f->get(s->r, k);
-}
-
-static void figure_open(struct text *out, struct sheet *s, const char *title, bool aside,
-                        size_t rows)
-{
-    page_figure_open(out, &(struct page_figure){s->figure++, title, aside, rows});
-}
-
-/* ---- response by level ---- */
-
-static void response_axis_title(struct text *t, const struct analysis_report *r)
-{
-    const bool binary = r->d->type == ENDPOINT_BINARY;
-    text_addf(t, "%s: %s (%s is better)", r->d->endpoint_name,
-              binary ? "rate, as a proportion" : "mean, in the units of the data",
-              r->d->higher_is_better ? "higher" : "lower");
-}
-
-static void response_words(struct text *out, const struct analysis_report *r)
-{
-    const bool binary = r->d->type == ENDPOINT_BINARY;
-    page_paragraph(out, NULL,
-                   binary ? "Circles are the raw rates, larger with more outcomes, with Wilson's "
-                            "95% interval. They look at each level alone."
-                          : "Circles are the raw means, larger with more outcomes, with 95% "
-                            "intervals from the spread at that level alone.");
-    page_paragraph(out, NULL,
-                   "Diamonds are the posterior means with 95% posterior intervals. They borrow "
-                   "from the other levels through the model, and from the priors.");
-    if (r->a->curve.points > 0)
-        page_paragraph(out, NULL,
-                       "The line and its band continue the curve between the levels "
-                       "studied; only the levels were studied.");
-    page_paragraph(out, NULL,
-                   "Where circles stray from diamonds in a pattern, the curve may not "
-                   "suit the data.");
-}
-
-static void response_chart(struct text *out, struct sheet *s, const char *label)
-{
-    const struct analysis_report *r = s->r;
-    const struct curve_result *curve = &r->a->curve;
-    static const char *const keys[] = {"raw", "raw_interval", "observed", "mean", "interval"};
-    struct text title = TEXT_INIT;
-    for (size_t i = 0; i < 5; i++)
-        fill(s, i, keys[i], false);
-    fill(s, 5, "raw_interval", true);
-    fill(s, 6, "interval", true);
-    response_axis_title(&title, r);
-    const struct chart_response c = {
-        .levels = chart_of(s, -1, NULL),
-        .title = text_s(&title),
-        .label = label,
-        .raw_name = r->d->type == ENDPOINT_BINARY ? "raw rate, 95%" : "raw mean, 95%",
-        .posterior_name = "posterior, 95%",
-        .curve_name = "curve, 95% band",
-        .raw = s->column[0],
-        .raw_low = s->column[1],
-        .raw_high = s->column[5],
-        .size = s->column[2],
-        .mean = s->column[3],
-        .low = s->column[4],
-        .high = s->column[6],
-        .points = curve->points,
-        .at = curve->value,
-        .curve = curve->mean,
-        .curve_low = curve->q025,
-        .curve_high = curve->q975,
-        .reference = r->d->has_reference_number ? r->d->reference_number : NAN,
-        .reference_name = "reference",
-    };
-    chart_response(out, &c);
-    text_release(&title);
-}
-
-static void response_figure(struct text *out, struct sheet *s)
-{
-    static const char *const keys[] = {
-        "observed", "raw",  "raw_sd",        "raw_interval",  "mean", "sd",
-        "interval", "gain", "gain_interval", "gain_positive", NULL};
-    figure_open(out, s, "Response by level", true, s->n);
-    response_chart(out, s,
-                   "Chart of the response by level: raw data and posterior, each with 95% "
-                   "intervals. The numbers are in the table that follows.");
-    page_figure_beside(out);
-    response_words(out, s->r);
-    page_figure_below(out);
-    page_table(out, table_levels(s->r, keys),
-               design_has_gain(s->r->d)
-                   ? "Results by level. The gain is taken against the reference, and is positive "
-                     "where the level is better."
-                   : "Results by level.");
-    page_figure_close(out);
-}
+#include "report/page_response.h"
 
 /* ---- targets ---- */
 
@@ -182,7 +33,7 @@ static void target_chart(struct text *out, struct sheet *s, size_t t)
 {
     const bool prior = s->r->a->level[0].prior_pr_target != NULL;
     const struct chart_bars c = {
-        .levels = chart_of(s, s->r->a->target[t].selected, "no level"),
+        .levels = sheet_levels(s, s->r->a->target[t].selected, "no level"),
         .title = "Probability",
         .label = "Chart of the probability that each level is the target, and that it meets it. "
                  "The numbers are in the table that follows.",
@@ -199,7 +50,7 @@ static void target_figure(struct text *out, struct sheet *s, size_t t)
 {
     struct text words = TEXT_INIT;
     text_addf(&words, "%s: which level it is", s->r->d->target[t].name);
-    figure_open(out, s, text_s(&words), false, s->n);
+    sheet_figure_open(out, s, text_s(&words), false, s->n);
     target_chart(out, s, t);
     page_figure_beside(out);
     text_clear(&words);
@@ -236,10 +87,10 @@ static void allocation_figure(struct text *out, struct sheet *s)
     static const char *const with_next[] = {"randomized", "so_far", "next_share", NULL};
     static const char *const so_far[] = {"randomized", "so_far", NULL};
     const bool next = has_next_shares(s->r);
-    fill(s, 0, "so_far", false);
-    fill(s, 1, "next_share", false);
+    sheet_fill(s, 0, "so_far", false);
+    sheet_fill(s, 1, "next_share", false);
     const struct chart_bars c = {
-        .levels = chart_of(s, -1, NULL),
+        .levels = sheet_levels(s, -1, NULL),
         .title = "Share of subjects (%)",
         .label = "Chart of the share of subjects by level. The numbers are in the table that "
                  "follows.",
@@ -247,7 +98,7 @@ static void allocation_figure(struct text *out, struct sheet *s)
         .bar_name = {"randomized so far", next ? "next share" : NULL},
         .bar = {s->column[0], s->column[1]},
     };
-    figure_open(out, s, "Allocation, current and next", false, s->n);
+    sheet_figure_open(out, s, "Allocation, current and next", false, s->n);
     chart_bars(out, &c);
     page_figure_beside(out);
     allocation_words(out, s->r);
@@ -256,6 +107,12 @@ static void allocation_figure(struct text *out, struct sheet *s)
 }
 
 /* ---- decisions ---- */
+
+static void raise_first(struct text *t)
+{
+    if (t->length > 0 && t->s[0] >= 'a' && t->s[0] <= 'z')
+        t->s[0] = (char)(t->s[0] - 'a' + 'A');
+}
 
 struct gauges {
     size_t n, capacity;
@@ -347,7 +204,7 @@ static void decisions_words(struct text *out, const struct analysis_report *r)
 
 static void decisions_figure(struct text *out, struct sheet *s)
 {
-    figure_open(out, s, "Decisions", true, condition_count(s->r));
+    sheet_figure_open(out, s, "Decisions", true, condition_count(s->r));
     decisions_chart(out, s->r);
     page_figure_beside(out);
     decisions_words(out, s->r);
@@ -360,10 +217,13 @@ static void decisions_figure(struct text *out, struct sheet *s)
 
 void page_add_figures(struct text *out, const struct analysis_report *r)
 {
+    static const char *const keys[] = {
+        "observed", "raw",        "raw_sd", "raw_interval",  "mean",          "sd",
+        "interval", "likelihood", "gain",   "gain_interval", "gain_positive", NULL};
     struct sheet s;
     sheet_init(&s, r);
     page_section_open(out, "figures", "Figures and their data");
-    response_figure(out, &s);
+    page_response(out, &s, keys);
     for (size_t t = 0; t < r->a->targets; t++)
         target_figure(out, &s, t);
     allocation_figure(out, &s);

@@ -5,6 +5,7 @@
 
 #include "report/analysis_words.h"
 #include "report/figures.h"
+#include "report/fit_words.h"
 #include "report/page.h"
 
 /* One paragraph from one or two sentences of the same analysis. */
@@ -95,6 +96,10 @@ static void how_sure(struct text *out, const struct analysis_report *r)
     if (r->a->targets > 0)
         text_add(out, "</ul>\n");
     paragraph(out, r, words_computation, NULL);
+    struct text fit = TEXT_INIT;
+    words_lack_of_fit(&fit, r->a);
+    page_paragraph(out, NULL, text_s(&fit));
+    text_release(&fit);
     page_section_close(out);
 }
 

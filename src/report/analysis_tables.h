@@ -15,7 +15,6 @@ struct table *table_targets(const struct analysis_report *r);
 struct table *table_target(const struct analysis_report *r, size_t target);
 /* One row a condition; brief: the measure by its key, not in words. */
 struct table *table_decisions(const struct analysis_report *r, bool brief);
-struct table *table_parameters(const struct analysis_report *r);
 
 /* "Placebo (control)", "80 mg (closed)". */
 void add_level_name(struct text *out, const struct analysis_report *r, size_t level);

@@ -5,6 +5,8 @@
 
 #include "report/analysis_tables.h"
 #include "report/analysis_words.h"
+#include "report/fit_words.h"
+#include "report/parameter_tables.h"
 #include "report/wrap.h"
 
 static void heading(struct text *out, const char *s)
@@ -21,6 +23,15 @@ static void paragraph(struct text *out, const char *first, const struct analysis
     struct text t = TEXT_INIT;
     words(&t, r);
     wrap_add(out, first, text_s(&t));
+    text_release(&t);
+}
+
+static void paragraph_fit(struct text *out, const struct analysis *a,
+                          void (*words)(struct text *out, const struct analysis *a))
+{
+    struct text t = TEXT_INIT;
+    words(&t, a);
+    wrap_add(out, "  ", text_s(&t));
     text_release(&t);
 }
 
@@ -96,8 +107,11 @@ static void decisions(struct text *out, const struct analysis_report *r)
 static void computation(struct text *out, const struct analysis_report *r)
 {
     heading(out, "Parameters");
-    add_table(out, table_parameters(r));
+    add_table(out, table_parameters(r->a, PARAMETER_VALUES));
+    paragraph_fit(out, r->a, words_likelihood);
+    paragraph_fit(out, r->a, words_lack_of_fit);
     heading(out, "Computation");
+    add_table(out, table_parameters(r->a, PARAMETER_DRAWS));
     paragraph(out, "  ", r, words_computation);
 }
 

@@ -22,7 +22,8 @@ struct chart_levels {
     const char *extra;   /* a last column after the levels ("no level"), or NULL */
 };
 
-/* Response by level: raw points with intervals, posterior points with intervals, a curve. */
+/* Response by level: raw points with intervals, posterior points with intervals, a curve; the
+ * likelihood's estimates as dashes and its curve as a broken line. */
 struct chart_response {
     struct chart_levels levels;
     const char *title; /* of the response axis, with its unit */
@@ -32,6 +33,9 @@ struct chart_response {
     const double *mean, *low, *high;
     size_t points; /* of the curve; 0 without */
     const double *at, *curve, *curve_low, *curve_high;
+    const char *likelihood_name; /* NULL: none */
+    const double *likelihood;    /* by level */
+    const double *likelihood_curve;
     double reference; /* a horizontal line, or NaN */
     const char *reference_name;
 };

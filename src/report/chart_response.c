@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* chart_response.c: response by level: raw points with intervals, posterior, curve with its band.
- */
+/* chart_response.c: response by level: raw points with intervals, posterior, curve with its band,
+ * likelihood estimates. */
 #include "report/chart.h"
 
 #include <math.h>
@@ -37,6 +37,10 @@ static struct axis response_axis(const struct chart_response *c)
     widen(&low, &high, n, c->high);
     widen(&low, &high, c->points, c->curve_low);
     widen(&low, &high, c->points, c->curve_high);
+    if (c->likelihood_name) {
+        widen(&low, &high, n, c->likelihood);
+        widen(&low, &high, c->points, c->likelihood_curve);
+    }
     widen(&low, &high, 1, &c->reference);
     return low <= high ? axis_round(low, high, 6) : axis_round(0, 1, 5);
 }
@@ -73,6 +77,27 @@ static void curve_draw(struct text *out, const struct drawing *w)
     svg_area(out, "band", n, x, low, high);
     svg_polyline(out, "curve", n, x, mean);
     mem_free(x);
+}
+
+/* A broken line and dashes: told from the posterior's full line and diamonds without colour. */
+static void likelihood_draw(struct text *out, const struct drawing *w)
+{
+    const struct chart_response *c = w->c;
+    const double half = w->radius < 4 ? w->radius + 1 : 8;
+    if (!c->likelihood_name)
+        return;
+    double *x = mem_new(2 * c->points, sizeof *x), *y = x + c->points;
+    for (size_t i = 0; i < c->points; i++) {
+        x[i] = at_x(w, c->at[i]);
+        y[i] = at_y(w, c->likelihood_curve[i]);
+    }
+    chart_line(out, "likelihood", c->points, x, y);
+    mem_free(x);
+    for (size_t k = 0; k < c->levels.n; k++) {
+        const double at = at_y(w, c->likelihood[k]);
+        if (!isnan(at))
+            svg_line(out, "likelihood-mark", w->x[k] - half, at, w->x[k] + half, at);
+    }
 }
 
 static void reference_draw(struct text *out, const struct drawing *w)
@@ -134,11 +159,17 @@ static void legend_draw(struct text *out, const struct drawing *w)
     legend_next(out, &g, w->c->posterior_name, &x, &y);
     svg_line(out, "posterior", x - 11, y, x + 11, y);
     svg_mark(out, "posterior-mark", MARK_DIAMOND, x, y, 4);
-    if (w->c->points == 0)
+    if (w->c->points > 0) {
+        legend_next(out, &g, w->c->curve_name, &x, &y);
+        svg_rect(out, "band", x - 11, y - 7, 22, 14);
+        svg_line(out, "curve", x - 11, y, x + 11, y);
+    }
+    if (!w->c->likelihood_name)
         return;
-    legend_next(out, &g, w->c->curve_name, &x, &y);
-    svg_rect(out, "band", x - 11, y - 7, 22, 14);
-    svg_line(out, "curve", x - 11, y, x + 11, y);
+    legend_next(out, &g, w->c->likelihood_name, &x, &y);
+    if (w->c->points > 0)
+        svg_line(out, "likelihood", x - 11, y - 6, x + 11, y + 6);
+    svg_line(out, "likelihood-mark", x - 8, y, x + 8, y);
 }
 
 static void sizes(struct drawing *w)
@@ -151,12 +182,17 @@ static void sizes(struct drawing *w)
 
 static void draw(struct text *out, const struct chart_response *c, bool narrow)
 {
-    const char *const names[] = {c->raw_name, c->posterior_name, c->curve_name};
+    const char *names[4] = {c->raw_name, c->posterior_name};
+    size_t named = 2;
+    if (c->points > 0)
+        names[named++] = c->curve_name;
+    if (c->likelihood_name)
+        names[named++] = c->likelihood_name;
     struct drawing w = {.c = c, .f = frame_new(narrow, 0), .y = response_axis(c)};
     w.f.left = axis_room(&w.y, "");
     w.to_scale = levels_fit_to_scale(&c->levels, &w.f);
     levels_make_room_left(&c->levels, &w.f, w.to_scale);
-    frame_fit(&w.f, names, c->points ? 3 : 2, c->title, narrow ? 230 : 300,
+    frame_fit(&w.f, names, named, c->title, narrow ? 230 : 300,
               levels_room(&c->levels, &w.f, w.to_scale));
     w.x = mem_new(c->levels.n + 1, sizeof *w.x);
     levels_place(&c->levels, &w.f, w.to_scale, w.x);
@@ -168,6 +204,7 @@ static void draw(struct text *out, const struct chart_response *c, bool narrow)
     curve_draw(out, &w);
     reference_draw(out, &w);
     points_draw(out, &w);
+    likelihood_draw(out, &w);
     legend_draw(out, &w);
     svg_close(out);
     mem_free(w.x);

@@ -107,6 +107,11 @@ bool level_can_be_target(const struct analysis_report *r, size_t level)
     return design_is_active(r->d, level) && r->a->level[level].open;
 }
 
+bool likelihood_is_shown(const struct analysis *a)
+{
+    return a->likelihood.exists && a->likelihood.converged;
+}
+
 double share_so_far(const struct analysis_report *r, size_t level)
 {
     const double n = (double)r->data->subjects;
@@ -181,6 +186,11 @@ static double response_high(const struct analysis_report *r, size_t level)
     return r->a->level[level].response.q975;
 }
 
+static double likelihood_response(const struct analysis_report *r, size_t level)
+{
+    return likelihood_is_shown(r->a) ? r->a->likelihood.response[level] : NAN;
+}
+
 static double gain_mean(const struct analysis_report *r, size_t level)
 {
     return is_reference(r, level) ? NAN : r->a->level[level].gain.mean;
@@ -228,6 +238,12 @@ static const struct level_figure level_figures[] = {
      NEEDS_NOTHING,
      response_low,
      response_high},
+    {"likelihood",
+     {"Likelihood mean", "Likelihood rate"},
+     UNIT_RESPONSE,
+     NEEDS_LIKELIHOOD,
+     likelihood_response,
+     NULL},
     {"gain", {"Gain", "Gain"}, UNIT_RESPONSE, NEEDS_GAIN, gain_mean, NULL},
     {"gain_interval", {"Gain 95%", "Gain 95%"}, UNIT_RESPONSE, NEEDS_GAIN, gain_low, gain_high},
     {"gain_positive",
@@ -251,6 +267,8 @@ bool level_figure_exists(const struct level_figure *f, const struct analysis_rep
 {
     if (f->needs == NEEDS_GAIN)
         return design_has_gain(r->d);
+    if (f->needs == NEEDS_LIKELIHOOD)
+        return likelihood_is_shown(r->a);
     return f->needs == NEEDS_NOTHING || r->d->type == ENDPOINT_CONTINUOUS;
 }
 

@@ -31,7 +31,7 @@ void figure_count(struct text *out, double n);
 void figure_error(struct text *out, double mcse); /* two significant digits */
 
 enum figure_unit { UNIT_COUNT, UNIT_RESPONSE, UNIT_PROBABILITY, UNIT_SHARE };
-enum figure_needs { NEEDS_NOTHING, NEEDS_GAIN, NEEDS_SD };
+enum figure_needs { NEEDS_NOTHING, NEEDS_GAIN, NEEDS_SD, NEEDS_LIKELIHOOD };
 
 /* One figure by level. `upper` makes it an interval. Getters return NaN for what does not exist or
  * means nothing to a reader (a gain of the reference over itself). */
@@ -49,6 +49,8 @@ bool level_figure_exists(const struct level_figure *f, const struct analysis_rep
 void level_figure_add(struct text *out, const struct level_figure *f,
                       const struct analysis_report *r, size_t level);
 
+/* Whether there are likelihood estimates to show. */
+bool likelihood_is_shown(const struct analysis *a);
 /* Share of all subjects randomized so far (0 when there are none). */
 double share_so_far(const struct analysis_report *r, size_t level);
 /* Whether any next share exists (not at the last analysis, not when distrusted). */

@@ -278,13 +278,15 @@ static void fill_parameters(struct fixture *f)
 {
     static const char *const names[] = {"E0", "Emax", "ED50", "sd"};
     f->a.parameters = 4;
+    f->a.model = &f->d.model;
     f->a.parameter = keep(f, mem_new(4, sizeof *f->a.parameter));
     for (size_t p = 0; p < 4; p++) {
         struct parameter_result *x = &f->a.parameter[p];
         x->name = names[p];
         set_spread(&x->value, 1 + 2.5 * (double)p, 0.3 + (double)p);
         x->diag = (struct convergence){1.0012, 11900, 9800, 0.0039 * (1 + 9 * (double)p)};
-        x->sd_over_prior_sd = 0.4;
+        x->sd_over_prior_sd = p == 2 ? 0.96 : 0.4;
+        f->d.model.prior[p] = p == 3 ? prior_fixed(2.6) : prior_normal(0, 2 + (double)p);
     }
     f->a.parameter[3].value = (struct spread){2.6, 0, 2.6, 2.6, 2.6}; /* fixed */
     f->a.parameter[3].diag = (struct convergence){NAN, NAN, NAN, NAN};
@@ -304,6 +306,7 @@ static void fill_common(struct fixture *f)
                                                      .kish = 0.93,
                                                      .second_name = "quadrature",
                                                      .second_difference = 0.0007,
+                                                     .lack_of_fit_p = NAN,
                                                      .trusted = true};
     fill_parameters(f);
     fill_selection(f);

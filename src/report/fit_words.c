@@ -1,0 +1,51 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* fit_words.c: what there is to say of one fitted model. */
+#include "report/fit_words.h"
+
+#include <math.h>
+
+#include "base/number.h"
+#include "report/figures.h"
+
+static void add_digits(struct text *out, double x, int digits)
+{
+    char s[NUMBER_CHARS];
+    text_add(out, number_significant(s, x, digits));
+}
+
+void words_likelihood(struct text *out, const struct analysis *a)
+{
+    const struct likelihood_fit *f = &a->likelihood;
+    if (!f->exists) {
+        text_add(out, "There is no likelihood fit of this curve to this kind of endpoint.");
+        return;
+    }
+    if (!f->converged) {
+        text_addf(out, "There are no likelihood estimates: %s", f->message ? f->message : "");
+        return;
+    }
+    text_add(out, "The likelihood fit (maximum likelihood; it looks at no prior but the fixed "
+                  "ones) has log-likelihood ");
+    add_digits(out, f->log_likelihood, 6);
+    text_add(out, " and AIC ");
+    add_digits(out, f->aic, 6);
+    text_add(out, ". It feeds no probability and no decision.");
+}
+
+void words_lack_of_fit(struct text *out, const struct analysis *a)
+{
+    const double p = a->diagnostics.lack_of_fit_p;
+    struct text shown = TEXT_INIT;
+    if (isnan(p)) {
+        text_add(out, "How well the curve suits the level means cannot be said: fewer than two "
+                      "levels have outcomes.");
+        return;
+    }
+    figure_probability(&shown, p, (struct digits){3, 0});
+    text_addf(out,
+              "The level means lie at least as far from the curve in %s of repetitions of the "
+              "trial under the fitted model (posterior predictive p); small values say that the "
+              "curve does not fit the level means.",
+              text_s(&shown));
+    text_release(&shown);
+}

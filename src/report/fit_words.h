@@ -1,0 +1,13 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* fit_words.h: what there is to say of one fitted model: its likelihood fit, how well the curve
+ * suits the level means. Plain text, whole sentences, appended without a newline. */
+#ifndef TERRACE_FIT_WORDS_H
+#define TERRACE_FIT_WORDS_H
+
+#include "analysis/analysis.h"
+#include "base/text.h"
+
+void words_likelihood(struct text *out, const struct analysis *a);
+void words_lack_of_fit(struct text *out, const struct analysis *a);
+
+#endif
