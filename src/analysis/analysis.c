@@ -8,6 +8,7 @@
 #include "analysis/cautions.h"
 #include "analysis/decide.h"
 #include "analysis/judge.h"
+#include "analysis/lack_of_fit.h"
 #include "analysis/level_figures.h"
 #include "analysis/live_run.h"
 #include "analysis/mean_curve.h"
@@ -213,6 +214,11 @@ static void fill_shares(struct analysis *a, const struct judgement *j,
         a->level[k].next_share = share[k];
 }
 
+static struct rng_key key_of(const struct analysis_request *r)
+{
+    return (struct rng_key){r->seed, RNG_SAMPLER, r->scenario, r->trial, (uint32_t)r->number};
+}
+
 static void run_live(struct analysis *out, struct analyst *w, const struct level_data *data,
                      const struct analysis_request *r)
 {
@@ -226,7 +232,9 @@ static void run_live(struct analysis *out, struct analyst *w, const struct level
     live_run(&x);
     figures_full(out, w->j);
     figures_parameters(out, w->j, w->diagnosed);
-    caution_flat(out, w->d);
+    out->diagnostics.lack_of_fit_p = lack_of_fit_p(w->d, data, &w->j->draws, key_of(r));
+    caution_fit(out);
+    caution_set_by_prior(out, data);
     mean_curve_fill(&out->curve, w->plan, w->d, &w->j->draws, r->threads);
 }
 
@@ -271,13 +279,12 @@ static void clear(struct analysis *out, const struct analysis_request *r)
 enum status analysis_run(struct analysis *out, struct analyst *w, const struct level_data *data,
                          const struct analysis_request *r, struct err *e)
 {
-    const struct rng_key key = {r->seed, RNG_SAMPLER, r->scenario, r->trial, (uint32_t)r->number};
     clear(out, r);
     judgement_open(w->j, r->closed);
     if (!any_level_open(w->j))
         return err_add(e, STATUS_INPUT, w->d->file, 0, "/levels/list",
                        "no active level is open; at least one must stay open");
-    const enum status status = posterior_start(w->p, data, key, e);
+    const enum status status = posterior_start(w->p, data, key_of(r), e);
     if (status != STATUS_OK)
         return status;
     if (r->live)

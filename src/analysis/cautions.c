@@ -11,8 +11,8 @@
 
 enum { NAMED_MOST = 5 };
 
-/* A shape whose posterior sd is above this share of its prior sd comes from the prior. */
-static const double FLAT_SHARE = 0.9;
+/* A lack_of_fit_p below this is worth a warning. */
+static const double FIT_LEAST = 0.05;
 
 static void append(char ***list, size_t *count, struct text *sentence)
 {
@@ -129,19 +129,46 @@ void caution_data(struct analysis *a, const struct design *d, const struct level
         caution_events(a, d, data);
 }
 
-void caution_flat(struct analysis *a, const struct design *d)
+/* ---- the model ---- */
+
+void caution_set_by_prior(struct analysis *a, const struct level_data *data)
 {
-    for (size_t i = 0; i < a->parameters; i++) {
+    struct text t = TEXT_INIT;
+    size_t count = 0;
+    double n = 0;
+    for (size_t k = 0; k < data->levels; k++)
+        n += data->n[k];
+    for (size_t i = 0; i < a->parameters && n > 0; i++) {
         const struct parameter_result *x = &a->parameter[i];
-        struct text t = TEXT_INIT;
-        if (d->model.parameter[i]->role != ROLE_SHAPE || !(x->sd_over_prior_sd > FLAT_SHARE))
+        if (!parameter_set_by_prior(x))
             continue;
-        text_addf(&t, "The data say little about %s (posterior sd / prior sd is ", x->name);
+        text_addf(
+            &t, "%s%s (",
+            count++ ? ", " : "Set by the prior (posterior sd / prior sd above 0.9): ", x->name);
         add_decimals(&t, x->sd_over_prior_sd, 2);
-        text_add(&t, "): what depends on it comes from its prior. Try another prior for it to see "
-                     "how much.");
-        caution_add(&a->diagnostics, &t);
+        text_add(&t, ")");
     }
+    text_add(&t, ". The data say little there, and what depends on it comes from the prior. A "
+                 "sensitivity model with another prior shows how much.");
+    if (count > 0)
+        caution_add(&a->diagnostics, &t);
+    text_release(&t);
+}
+
+void caution_fit(struct analysis *a)
+{
+    struct text t = TEXT_INIT;
+    const double p = a->diagnostics.lack_of_fit_p;
+    if (!(p < FIT_LEAST))
+        return;
+    text_add(&t, "The curve does not fit the level means (posterior predictive p ");
+    if (p < 0.001)
+        text_add(&t, "less than 0.001");
+    else
+        add_decimals(&t, p, 3);
+    text_add(&t, "). Every figure by level leans on the curve: compare the raw data, and consider "
+                 "another curve.");
+    caution_add(&a->diagnostics, &t);
 }
 
 /* ---- computation ---- */

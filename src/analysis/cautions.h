@@ -15,8 +15,10 @@ void caution_add(struct analysis_diagnostics *g, struct text *sentence);
 
 /* No outcomes, one level only, levels without, no events or only events. */
 void caution_data(struct analysis *a, const struct design *d, const struct level_data *data);
-/* Shape numbers about which the data say nothing. */
-void caution_flat(struct analysis *a, const struct design *d);
+/* Parameters that are set by the prior (analysis.h), unless there are no outcomes at all. */
+void caution_set_by_prior(struct analysis *a, const struct level_data *data);
+/* The curve does not fit the level means: lack_of_fit_p below 0.05. */
+void caution_fit(struct analysis *a);
 /* The slice sampler was used; `kish` is the share that the usual one had. */
 void caution_slice(struct analysis *a, double kish);
 /* R-hat or effective sample sizes were not reached. */

@@ -19,7 +19,8 @@ enum rng_purpose {
     RNG_SAMPLER = 5,
     RNG_SLICE = 6,
     RNG_QUADRATURE = 7,
-    RNG_PRIOR = 8
+    RNG_PRIOR = 8,
+    RNG_REPEATED = 9 /* data repeated under the fitted model */
 };
 
 /* Counter layout: purpose 8, scenario 16, trial 32, index 32, block 40 bits. */
