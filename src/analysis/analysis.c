@@ -13,6 +13,7 @@
 #include "analysis/live_run.h"
 #include "analysis/mean_curve.h"
 #include "analysis/measures.h"
+#include "analysis/sensitivity.h"
 #include "analysis/targets.h"
 #include "base/mem.h"
 #include "posterior/diagnostics.h"
@@ -119,6 +120,8 @@ void analysis_release(struct analysis *a)
     mem_free(a->decision);
     mean_curve_release(&a->curve);
     caution_release(a);
+    sensitivity_release(a);
+    mem_free(a->failure);
     *a = (struct analysis){0};
 }
 
@@ -270,6 +273,7 @@ static void clear(struct analysis *out, const struct analysis_request *r)
 {
     caution_release(out);
     mean_curve_release(&out->curve);
+    sensitivity_release(out);
     out->number = r->number;
     out->final = r->final;
     out->diagnostics =
@@ -293,6 +297,8 @@ enum status analysis_run(struct analysis *out, struct analyst *w, const struct l
         run_simulated(out, w, r);
     w->draws = w->j->draws;
     fill_shares(out, w->j, data, r);
+    if (r->live)
+        sensitivity_run(out, w->d, data, r);
     if (out->diagnostics.trusted)
         return STATUS_OK;
     out->recommendation = RECOMMEND_UNDETERMINED;

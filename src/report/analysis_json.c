@@ -7,6 +7,7 @@
 
 #include "base/base.h"
 #include "report/results_json.h"
+#include "report/sensitivity_json.h"
 
 /* A verdict that must not be acted upon when the computation is not trusted. */
 static void key_verdict(struct json_writer *w, const struct analysis_report *r, const char *key,
@@ -52,15 +53,6 @@ static void design_and_data(struct json_writer *w, const struct analysis_report 
     json_key_number(w, "seed", (double)r->seed);
 }
 
-static void by_target(struct json_writer *w, const struct analysis_report *r, const char *key,
-                      const double *p)
-{
-    json_key_open_inline(w, key, '{');
-    for (size_t t = 0; t < r->a->targets; t++)
-        json_key_maybe(w, r->d->target[t].name, p[t]);
-    json_close(w);
-}
-
 static void level(struct json_writer *w, const struct analysis_report *r, size_t k)
 {
     const struct level_result *l = &r->a->level[k];
@@ -75,8 +67,8 @@ static void level(struct json_writer *w, const struct analysis_report *r, size_t
     json_raw(w, r, k);
     json_response(w, l);
     json_gain(w, r, l);
-    by_target(w, r, "pr_target", l->pr_target);
-    by_target(w, r, "pr_meets", l->pr_meets);
+    json_by_target(w, r, "pr_target", l->pr_target);
+    json_by_target(w, r, "pr_meets", l->pr_meets);
     json_key_maybe(w, "next_share", r->a->diagnostics.trusted ? l->next_share : NAN);
     json_close(w);
 }
@@ -94,37 +86,11 @@ static void target(struct json_writer *w, const struct analysis_report *r, size_
     json_close(w);
 }
 
-/* The arguments of the condition that were given or have a default, so that two conditions on one
- * measure can be told apart. The condition's own `value` is the key of the result, so the response
- * it compares with is called `response`. */
-static void condition_arguments(struct json_writer *w, const struct design *d,
-                                const struct condition *c)
-{
-    const unsigned allowed = c->measure->allowed;
-    json_key_string(w, "measure", c->measure->key);
-    if (c->target >= 0)
-        json_key_string(w, "target", d->target[c->target].name);
-    if (c->level == LEVEL_ANY)
-        json_key_string(w, "level", "any");
-    else if (c->level >= 0)
-        json_key_string(w, "level", d->level[c->level].label);
-    if (allowed & ARG_GAIN)
-        json_key_number(w, "gain", c->gain);
-    if (allowed & ARG_VALUE)
-        json_key_number(w, "response", c->value);
-    if (allowed & ARG_PER_ARM) {
-        json_key_number(w, "per_arm", c->per_arm);
-        json_key_number(w, "alpha", c->alpha);
-    }
-    if (c->link)
-        json_key_string(w, "scale", "link");
-}
-
 static void condition(struct json_writer *w, const struct analysis_report *r,
                       const struct condition *c, const struct condition_result *x)
 {
     json_open_inline(w, '{');
-    condition_arguments(w, r->d, c);
+    json_condition_arguments(w, r->d, c);
     json_key_maybe(w, "value", x->value);
     json_key_maybe(w, "mcse", x->mcse);
     json_key_number(w, "threshold", c->threshold);
@@ -197,8 +163,7 @@ void analysis_json(struct text *out, const struct analysis_report *r)
     json_diagnostics(&w, &r->a->diagnostics);
     if (r->a->notes > 0)
         json_key_strings(&w, "notes", r->a->notes, r->a->note);
-    json_key_open_inline(&w, "sensitivity", '[');
-    json_close(&w);
+    json_sensitivity(&w, r);
     json_close(&w);
     text_add(out, "\n");
 }

@@ -12,6 +12,7 @@
 #include "report/figures.h"
 #include "report/page.h"
 #include "report/page_response.h"
+#include "report/page_sensitivity.h"
 
 /* ---- targets ---- */
 
@@ -229,6 +230,7 @@ void page_add_figures(struct text *out, const struct analysis_report *r)
     allocation_figure(out, &s);
     if (condition_count(r) > 0)
         decisions_figure(out, &s);
+    page_sensitivity(out, &s);
     page_section_close(out);
     sheet_release(&s);
 }

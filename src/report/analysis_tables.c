@@ -142,8 +142,7 @@ struct digits digits_condition(const struct condition *c, const struct condition
     return (struct digits){decimals < 3 ? 3 : decimals > 5 ? 5 : decimals, 0};
 }
 
-/* The design's own words: "pr_gain, ED90". */
-static void add_brief(struct text *out, const struct design *d, const struct condition *c)
+void add_measure_brief(struct text *out, const struct design *d, const struct condition *c)
 {
     text_add(out, c->measure->key);
     if (c->target >= 0)
@@ -168,7 +167,7 @@ static void condition_row(const struct rows *w, const char *name, const struct c
     struct table *t = w->t;
     table_cell(t, name);
     if (w->brief)
-        add_brief(table_open(t), w->r->d, c);
+        add_measure_brief(table_open(t), w->r->d, c);
     else
         c->measure->sentence(c, w->r->d, table_open(t));
     table_next(t);

@@ -18,6 +18,8 @@ struct table *table_decisions(const struct analysis_report *r, bool brief);
 
 /* "Placebo (control)", "80 mg (closed)". */
 void add_level_name(struct text *out, const struct analysis_report *r, size_t level);
+/* The design's own words: "pr_gain, ED90". */
+void add_measure_brief(struct text *out, const struct design *d, const struct condition *c);
 /* The condition in words with its side and threshold. */
 void add_condition(struct text *out, const struct analysis_report *r, const struct condition *c);
 /* The value and its threshold with as many decimals as both need to be told apart. */

@@ -7,6 +7,7 @@
 #include "report/analysis_words.h"
 #include "report/fit_words.h"
 #include "report/parameter_tables.h"
+#include "report/sensitivity_tables.h"
 #include "report/wrap.h"
 
 static void heading(struct text *out, const char *s)
@@ -125,6 +126,30 @@ static void cautions(struct text *out, const struct analysis_report *r)
     text_release(&list);
 }
 
+static void sensitivity(struct text *out, const struct analysis_report *r)
+{
+    if (r->a->sensitivities == 0)
+        return;
+    heading(out, "Other models (sensitivity; they decide nothing)");
+    for (size_t i = 1; i <= r->a->sensitivities; i++) {
+        struct text t = TEXT_INIT;
+        words_sensitivity(&t, r, i);
+        wrap_add(out, "  - ", text_s(&t));
+        text_release(&t);
+    }
+    add_table(out, table_models(r));
+    if (r->a->targets > 0) {
+        text_add(out, "\n");
+        add_table(out, table_models_by_target(r));
+    }
+    if (r->a->decisions > 0 || r->a->final_success.condition) {
+        text_add(out, "\n");
+        add_table(out, table_models_by_measure(r));
+    }
+    text_add(out, "\n");
+    add_table(out, table_models_by_level(r));
+}
+
 void analysis_text(struct text *out, const struct analysis_report *r)
 {
     head(out, r);
@@ -132,5 +157,6 @@ void analysis_text(struct text *out, const struct analysis_report *r)
     targets(out, r);
     decisions(out, r);
     computation(out, r);
+    sensitivity(out, r);
     cautions(out, r);
 }

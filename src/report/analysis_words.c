@@ -321,6 +321,22 @@ static void computation_reasons(struct reasons *w, const struct analysis_report 
         reason(w, r->data->warning[i]);
 }
 
+static void sensitivity_reasons(struct reasons *w, const struct analysis_report *r)
+{
+    for (size_t i = 0; i < r->a->sensitivities; i++) {
+        const struct analysis *a = &r->a->sensitivity[i];
+        struct text t = TEXT_INIT;
+        if (a->failure)
+            text_addf(&t, "Sensitivity model %zu could not be fitted: %s. ", i + 1, a->failure);
+        else if (!a->diagnostics.trusted)
+            text_addf(&t, "The computation of sensitivity model %zu cannot be trusted. ", i + 1);
+        text_add(&t, "That changes nothing of the analysis itself.");
+        if (a->failure || !a->diagnostics.trusted)
+            reason(w, text_s(&t));
+        text_release(&t);
+    }
+}
+
 static void pending_reasons(struct reasons *w, const struct analysis_report *r)
 {
     struct text t = TEXT_INIT;
@@ -350,6 +366,7 @@ size_t words_distrust(struct text *out, const struct analysis_report *r,
 {
     struct reasons w = {out, each, 0};
     computation_reasons(&w, r);
+    sensitivity_reasons(&w, r);
     pending_reasons(&w, r);
     dropout_reasons(&w, r);
     return w.count;

@@ -51,6 +51,21 @@ struct chart_bars {
     const double *mark[2];
 };
 
+/* The mean by level of several models, one line each: a curve, or the levels joined. Lines differ
+ * by their breaks and their marks; the first is full. */
+struct chart_model {
+    const char *name;
+    const double *mean; /* by level */
+    size_t points;      /* of the curve; 0: the level means are joined */
+    const double *at, *curve;
+};
+struct chart_models {
+    struct chart_levels levels;
+    const char *title, *label;
+    size_t n;
+    const struct chart_model *model;
+};
+
 /* Values against thresholds, one row each, on an axis from 0 to 1. */
 struct chart_gauge {
     const char *name, *detail; /* a heading, and what is measured */
@@ -62,6 +77,7 @@ struct chart_gauge {
 };
 
 void chart_response(struct text *out, const struct chart_response *c);
+void chart_models(struct text *out, const struct chart_models *c);
 void chart_bars(struct text *out, const struct chart_bars *c);
 void chart_gauges(struct text *out, const char *title, const char *label, size_t n,
                   const struct chart_gauge *rows);
@@ -111,6 +127,8 @@ void levels_make_room_left(const struct chart_levels *l, struct frame *f, bool t
 double levels_room(const struct chart_levels *l, const struct frame *f, bool to_scale);
 void levels_draw(struct text *out, const struct chart_levels *l, const struct frame *f,
                  bool to_scale, const double *x);
+/* Where a level value stands, also between levels that stand in equal steps. */
+double levels_at(const struct chart_levels *l, const double *x, double value);
 /* Smallest distance between neighbours, in pixels. */
 double levels_gap(const struct chart_levels *l, const double *x);
 

@@ -37,6 +37,15 @@ void levels_place(const struct chart_levels *l, const struct frame *f, bool to_s
     x[l->n] = f->right - 0.7 * step;
 }
 
+double levels_at(const struct chart_levels *l, const double *x, double value)
+{
+    size_t k = 0;
+    while (k + 2 < l->n && value > l->value[k + 1])
+        k++;
+    const double part = (value - l->value[k]) / (l->value[k + 1] - l->value[k]);
+    return x[k] + part * (x[k + 1] - x[k]);
+}
+
 double levels_gap(const struct chart_levels *l, const double *x)
 {
     double gap = x[1] - x[0];

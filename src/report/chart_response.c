@@ -50,17 +50,6 @@ static double at_y(const struct drawing *w, double y)
     return axis_at(&w->y, w->f.bottom, w->f.top, y);
 }
 
-/* Where a level value stands, also between levels that stand in equal steps. */
-static double at_x(const struct drawing *w, double value)
-{
-    const struct chart_levels *l = &w->c->levels;
-    size_t k = 0;
-    while (k + 2 < l->n && value > l->value[k + 1])
-        k++;
-    const double part = (value - l->value[k]) / (l->value[k + 1] - l->value[k]);
-    return w->x[k] + part * (w->x[k + 1] - w->x[k]);
-}
-
 static void curve_draw(struct text *out, const struct drawing *w)
 {
     const struct chart_response *c = w->c;
@@ -69,7 +58,7 @@ static void curve_draw(struct text *out, const struct drawing *w)
         return;
     double *x = mem_new(4 * n, sizeof *x), *mean = x + n, *low = x + 2 * n, *high = x + 3 * n;
     for (size_t i = 0; i < n; i++) {
-        x[i] = at_x(w, c->at[i]);
+        x[i] = levels_at(&c->levels, w->x, c->at[i]);
         mean[i] = at_y(w, c->curve[i]);
         low[i] = at_y(w, c->curve_low[i]);
         high[i] = at_y(w, c->curve_high[i]);
@@ -88,7 +77,7 @@ static void likelihood_draw(struct text *out, const struct drawing *w)
         return;
     double *x = mem_new(2 * c->points, sizeof *x), *y = x + c->points;
     for (size_t i = 0; i < c->points; i++) {
-        x[i] = at_x(w, c->at[i]);
+        x[i] = levels_at(&c->levels, w->x, c->at[i]);
         y[i] = at_y(w, c->likelihood_curve[i]);
     }
     chart_line(out, "likelihood", c->points, x, y);

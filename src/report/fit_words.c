@@ -3,9 +3,37 @@
 #include "report/fit_words.h"
 
 #include <math.h>
+#include <string.h>
 
 #include "base/number.h"
+#include "report/check_words.h"
 #include "report/figures.h"
+
+bool model_is_shifted(const struct model *m)
+{
+    return strcmp(m->curve->key, "log_linear") == 0;
+}
+
+void words_model_name(struct text *out, const struct model *m)
+{
+    text_add(out, m->curve->key);
+    if (m->curve->kind == CURVE_WALK && m->order == 2)
+        text_add(out, ", order 2");
+    if (m->curve->kind == CURVE_WALK && m->spacing_actual)
+        text_add(out, ", actual gaps");
+    if (model_is_shifted(m)) {
+        text_add(out, ", shift ");
+        add_shortest_number(out, m->shift);
+    }
+}
+
+void words_model_priors(struct text *out, const struct model *m)
+{
+    for (size_t i = 0; i < m->parameters; i++) {
+        text_addf(out, "%s%s ", i ? "; " : "", m->parameter[i]->name);
+        say_prior(out, &m->prior[i]);
+    }
+}
 
 static void add_digits(struct text *out, double x, int digits)
 {

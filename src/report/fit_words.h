@@ -7,6 +7,12 @@
 #include "analysis/analysis.h"
 #include "base/text.h"
 
+/* "ndlm, order 2, actual gaps": the model without its priors, no full stop. */
+void words_model_name(struct text *out, const struct model *m);
+/* "E0 normal, mean -1, sd 2; Emax ...": no full stop. */
+void words_model_priors(struct text *out, const struct model *m);
+bool model_is_shifted(const struct model *m); /* its `shift` means something */
+
 void words_likelihood(struct text *out, const struct analysis *a);
 void words_lack_of_fit(struct text *out, const struct analysis *a);
 

@@ -69,6 +69,41 @@ void json_gain(struct json_writer *w, const struct analysis_report *r, const str
     json_close(w);
 }
 
+void json_by_target(struct json_writer *w, const struct analysis_report *r, const char *key,
+                    const double *p)
+{
+    json_key_open_inline(w, key, '{');
+    for (size_t t = 0; t < r->a->targets; t++)
+        json_key_maybe(w, r->d->target[t].name, p[t]);
+    json_close(w);
+}
+
+/* The arguments of the condition that were given or have a default, so that two conditions on one
+ * measure can be told apart. The condition's own `value` is the key of the result, so the response
+ * it compares with is called `response`. */
+void json_condition_arguments(struct json_writer *w, const struct design *d,
+                              const struct condition *c)
+{
+    const unsigned allowed = c->measure->allowed;
+    json_key_string(w, "measure", c->measure->key);
+    if (c->target >= 0)
+        json_key_string(w, "target", d->target[c->target].name);
+    if (c->level == LEVEL_ANY)
+        json_key_string(w, "level", "any");
+    else if (c->level >= 0)
+        json_key_string(w, "level", d->level[c->level].label);
+    if (allowed & ARG_GAIN)
+        json_key_number(w, "gain", c->gain);
+    if (allowed & ARG_VALUE)
+        json_key_number(w, "response", c->value);
+    if (allowed & ARG_PER_ARM) {
+        json_key_number(w, "per_arm", c->per_arm);
+        json_key_number(w, "alpha", c->alpha);
+    }
+    if (c->link)
+        json_key_string(w, "scale", "link");
+}
+
 static void parameter(struct json_writer *w, const struct parameter_result *p)
 {
     json_open_inline(w, '{');

@@ -21,6 +21,13 @@ void json_response(struct json_writer *w, const struct level_result *l);
 void json_gain(struct json_writer *w, const struct analysis_report *r,
                const struct level_result *l);
 
+/* p: one number a target */
+void json_by_target(struct json_writer *w, const struct analysis_report *r, const char *key,
+                    const double *p);
+/* measure, target, level, ...: several keys */
+void json_condition_arguments(struct json_writer *w, const struct design *d,
+                              const struct condition *c);
+
 void json_parameters(struct json_writer *w, const struct analysis *a);
 /* null where the fit does not exist; numbers are null where it did not converge. */
 void json_likelihood(struct json_writer *w, const struct likelihood_fit *f);
