@@ -51,12 +51,10 @@ static void blank(struct analysis *a, const struct design *d, const bool *closed
 static void fit(struct analysis *out, const struct design *d, const struct level_data *data,
                 const struct analysis_request *r)
 {
-    struct analyst *w = NULL;
+    struct analyst *w = analyst_new(d);
     struct err e = ERR_INIT;
-    enum status status = analyst_new(&w, d, &e);
     analysis_init(out, d);
-    if (status == STATUS_OK)
-        status = analysis_run(out, w, data, r, &e);
+    const enum status status = analysis_run(out, w, data, r, &e);
     if (status != STATUS_OK && status != STATUS_DISTRUSTED) {
         blank(out, d, r->closed);
         out->failure = mem_text(e.count > 0 ? e.faults[0].message : "it could not be fitted");

@@ -27,11 +27,45 @@ void words_model_name(struct text *out, const struct model *m)
     }
 }
 
+/* Five significant digits: default priors come from square roots and logarithms. */
+static void add_argument(struct text *out, double x)
+{
+    char s[NUMBER_CHARS];
+    double rounded;
+    if (number_parse(number_significant(s, x, 5), &rounded))
+        add_shortest_number(out, rounded);
+}
+
+static void add_end(struct text *out, const char *word, double x)
+{
+    if (!isfinite(x))
+        return;
+    text_addf(out, ", %s ", word);
+    add_argument(out, x);
+}
+
+void words_prior(struct text *out, const struct prior *p)
+{
+    if (prior_is_fixed(p)) {
+        text_add(out, "fixed at ");
+        add_argument(out, p->arg[0]);
+        return;
+    }
+    text_add(out, p->family->sentence);
+    for (size_t i = 0; i < PRIOR_ARGS && p->family->args[i].key; i++) {
+        text_addf(out, ", %s ", p->family->args[i].key);
+        add_argument(out, p->arg[i]);
+    }
+    add_end(out, "above", p->above);
+    add_end(out, "below", p->below);
+    text_add(out, p->on_variance ? ", on the variance" : "");
+}
+
 void words_model_priors(struct text *out, const struct model *m)
 {
     for (size_t i = 0; i < m->parameters; i++) {
         text_addf(out, "%s%s ", i ? "; " : "", m->parameter[i]->name);
-        say_prior(out, &m->prior[i]);
+        words_prior(out, &m->prior[i]);
     }
 }
 
@@ -45,7 +79,7 @@ void words_likelihood(struct text *out, const struct analysis *a)
 {
     const struct likelihood_fit *f = &a->likelihood;
     if (!f->exists) {
-        text_add(out, "There is no likelihood fit of this curve to this kind of endpoint.");
+        text_add(out, "There is no likelihood fit.");
         return;
     }
     if (!f->converged) {

@@ -9,6 +9,8 @@
 
 /* "ndlm, order 2, actual gaps": the model without its priors, no full stop. */
 void words_model_name(struct text *out, const struct model *m);
+/* "lognormal, meanlog 2.996, sdlog 1", rounded. */
+void words_prior(struct text *out, const struct prior *p);
 /* "E0 normal, mean -1, sd 2; Emax ...": no full stop. */
 void words_model_priors(struct text *out, const struct model *m);
 bool model_is_shifted(const struct model *m); /* its `shift` means something */

@@ -7,8 +7,8 @@
 
 #include "base/base.h"
 #include "base/number.h"
-#include "report/check_words.h"
 #include "report/figures.h"
+#include "report/fit_words.h"
 
 #define DASH "\xE2\x80\x93"
 
@@ -101,7 +101,7 @@ static void values_cells(struct table *t, const struct analysis *a, size_t p)
     else
         posterior_cells(t, x);
     number_cell(t, x->sd_over_prior_sd, (struct digits){2, 0});
-    say_prior(table_open(t), &a->model->prior[p]);
+    words_prior(table_open(t), &a->model->prior[p]);
     text_add(table_open(t), parameter_set_by_prior(x) ? "; set by the prior" : "");
     table_next(t);
 }

@@ -5,7 +5,7 @@ set -eu
 dir=$1
 levels='{"label":"P","value":0},{"label":"A","value":5},{"label":"B","value":10},{"label":"C","value":20},{"label":"D","value":40}'
 
-design() { # NAME CURVE TYPE MORE-OF-MODEL
+design() { # NAME CURVE TYPE MORE-OF-MODEL MORE-OF-DESIGN
     local range='' targets='"MED":{"rule":"minimum_effect","effect":0.1}'
     [ "$3" = continuous ] && range=',"range":[-10,10]' && targets='"MED":{"rule":"minimum_effect","effect":1}'
     cat >"$dir/$1.json" <<END
@@ -17,7 +17,7 @@ design() { # NAME CURVE TYPE MORE-OF-MODEL
  "subjects":200,"analyses":{"at":[20]},
  "decisions":[{"action":"stop_success","if":{"measure":"pr_gain","target":"ED90","above":0.99}},
   {"action":"stop_futility","if":{"measure":"predictive_next","target":"ED90","per_arm":100,"alpha":0.025,"below":0.2}}],
- "seed":42}
+ "seed":42${5:-}}
 END
 }
 
@@ -38,6 +38,9 @@ for curve in emax sigmoid_emax ndlm independent; do
     design "$curve-binary" $curve binary ''
 done
 design ndlm_actual-continuous ndlm continuous ',"spacing":"actual"'
+for type in continuous binary; do
+    design "sensitivity-$type" quadratic $type '' ',"sensitivity":[{"curve":"linear"},{"curve":"ndlm","order":2}]'
+done
 data continuous 12 0
 data binary 12 1
 data sparse-continuous 2 0

@@ -279,7 +279,7 @@ static double analysed(const char *type, const char *curve, size_t *warnings)
                                        .threads = 2};
     parse(&d, type, curve);
     umbrella(&data, strcmp(type, "binary") == 0);
-    CU_ASSERT_EQUAL_FATAL(analyst_new(&w, d, &e), STATUS_OK);
+    w = analyst_new(d);
     analysis_init(&a, d);
     CU_ASSERT_EQUAL(analysis_run(&a, w, &data, &r, &e), STATUS_OK);
     const double p = a.diagnostics.lack_of_fit_p;
