@@ -85,7 +85,7 @@ WARNINGS_DEV_CLANG := -Wcomma -Wmissing-variable-declarations -Wunreachable-code
     -Wconditional-uninitialized -Wassign-enum -Wloop-analysis
 IS_CLANG := $(findstring clang,$(CC))
 
-LIBRARIES := gsl libcjson libcrypto
+LIBRARIES := gsl nlopt libcjson libcrypto
 CPPFLAGS += -D_POSIX_C_SOURCE=200809L -Isrc -I. $(shell pkg-config --cflags $(LIBRARIES))
 CFLAGS ?= -O3 -g
 # The same bytes from every compiler: no contraction of a*b+c, and sqrt as one instruction.
