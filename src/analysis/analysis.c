@@ -10,6 +10,7 @@
 #include "analysis/judge.h"
 #include "analysis/lack_of_fit.h"
 #include "analysis/level_figures.h"
+#include "analysis/likelihood_beside.h"
 #include "analysis/live_run.h"
 #include "analysis/mean_curve.h"
 #include "analysis/measures.h"
@@ -239,6 +240,7 @@ static void run_live(struct analysis *out, struct analyst *w, const struct level
     caution_fit(out);
     caution_set_by_prior(out, data);
     mean_curve_fill(&out->curve, w->plan, w->d, &w->j->draws, r->threads);
+    likelihood_beside(out, w->d, data);
 }
 
 static void no_parameters(struct analysis *out, const struct design *d)
