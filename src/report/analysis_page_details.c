@@ -15,6 +15,9 @@ static void parameters(struct text *out, const struct analysis_report *r)
 {
     page_section_open(out, "parameters", "Parameters of the model");
     struct text t = TEXT_INIT;
+    words_likelihood(&t, r->a);
+    page_paragraph(out, NULL, text_s(&t));
+    text_release(&t);
     page_table(out, table_parameters(r->a, PARAMETER_VALUES | PARAMETER_DRAWS),
                likelihood_is_shown(r->a)
                    ? "Likelihood estimate with its standard error (SE), posterior with its median "
@@ -25,9 +28,6 @@ static void parameters(struct text *out, const struct analysis_report *r)
                      "and the checks of the draws. ESS: effective number of draws; MC error: "
                      "Monte Carlo standard error of the mean. SD / prior SD above 0.9 says that "
                      "the parameter is set by its prior.");
-    words_likelihood(&t, r->a);
-    page_paragraph(out, NULL, text_s(&t));
-    text_release(&t);
     page_section_close(out);
 }
 

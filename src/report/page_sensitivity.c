@@ -50,7 +50,7 @@ static void words(struct text *out, const struct analysis_report *r)
     }
     text_add(out, "</ul>\n");
     if (r->a->sensitivities + 1 > DRAWN_MOST)
-        page_paragraph(out, NULL, "The chart shows the first of them; the tables show all.");
+        page_paragraph(out, NULL, "The chart shows the first three of them; the tables show all.");
 }
 
 void page_sensitivity(struct text *out, struct sheet *s)

@@ -40,6 +40,13 @@ static void model_cell(struct table *t, const struct analysis_report *r, size_t 
     table_next(t);
 }
 
+/* The name of a group of rows is pale in all but its first. */
+static void mark_repeated(struct table *t, size_t i)
+{
+    if (i > 0)
+        table_mark(t, "again");
+}
+
 static void number_cell(struct table *t, double x, struct digits g)
 {
     figure_number(table_open(t), x, g);
@@ -99,6 +106,7 @@ static bool is_column(const struct level_figure *f, const struct analysis_report
 static void level_row(struct table *t, const struct analysis_report *r, size_t level, size_t i)
 {
     const struct analysis_report of = report_of_model(r, i);
+    mark_repeated(t, i);
     add_level_name(table_open(t), r, level);
     table_next(t);
     model_cell(t, r, i);
@@ -138,6 +146,7 @@ static void target_row(struct table *t, const struct analysis_report *r, size_t 
 {
     const struct analysis_report of = report_of_model(r, i);
     const struct target_result *x = &of.a->target[target];
+    mark_repeated(t, i);
     table_cell(t, r->d->target[target].name);
     model_cell(t, r, i);
     table_cell(t, x->selected >= 0 ? r->d->level[x->selected].label
@@ -172,6 +181,7 @@ static void measure_rows(struct table *t, const struct analysis_report *r, const
             const struct analysis *a = report_of_model(r, i).a;
             const struct decision_result *d = final ? &a->final_success : &a->decision[decision];
             const struct condition_result *x = &d->condition[c];
+            mark_repeated(t, i);
             table_cell(t, name);
             add_measure_brief(table_open(t), r->d, &when->list[c]);
             table_next(t);

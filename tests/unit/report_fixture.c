@@ -277,7 +277,9 @@ static void fill_curve(struct fixture *f, double base, double rise, double sd)
 static void fill_parameters(struct fixture *f)
 {
     static const char *const names[] = {"E0", "Emax", "ED50", "sd"};
-    f->a.parameters = 4;
+    static const struct parameter named[] = {
+        {.name = "E0"}, {.name = "Emax"}, {.name = "ED50"}, {.name = "sd"}};
+    f->a.parameters = f->d.model.parameters = 4;
     f->a.model = &f->d.model;
     f->a.parameter = keep(f, mem_new(4, sizeof *f->a.parameter));
     for (size_t p = 0; p < 4; p++) {
@@ -286,6 +288,7 @@ static void fill_parameters(struct fixture *f)
         set_spread(&x->value, 1 + 2.5 * (double)p, 0.3 + (double)p);
         x->diag = (struct convergence){1.0012, 11900, 9800, 0.0039 * (1 + 9 * (double)p)};
         x->sd_over_prior_sd = p == 2 ? 0.96 : 0.4;
+        f->d.model.parameter[p] = &named[p];
         f->d.model.prior[p] = p == 3 ? prior_fixed(2.6) : prior_normal(0, 2 + (double)p);
     }
     f->a.parameter[3].value = (struct spread){2.6, 0, 2.6, 2.6, 2.6}; /* fixed */
@@ -451,12 +454,86 @@ static void distrust(struct fixture *f)
 
 static void finish(struct fixture *f)
 {
+    f->a.likelihood.exists = true;
+    f->a.likelihood.message = words(f, "ED50 runs off beyond the levels.");
+    f->a.likelihood.rows = 1;
+    f->a.likelihood.row[0] = (struct likelihood_row){"ED50", NAN, NAN};
+    f->a.likelihood.log_likelihood = f->a.likelihood.aic = NAN;
     f->a.final = true;
     f->a.number = 7;
     f->a.recommendation = RECOMMEND_NO_SUCCESS;
     f->a.final_success.applies = true;
     for (size_t k = 0; k < f->a.levels; k++)
         f->a.level[k].next_share = NAN;
+}
+
+/* ---- models beside ---- */
+
+static void fill_likelihood(struct fixture *f)
+{
+    static const char *const names[] = {"E0", "Emax", "ED50", "sd", "drift_variance"};
+    struct likelihood_fit *x = &f->a.likelihood;
+    x->exists = x->converged = true;
+    x->log_likelihood = -231.21234567891;
+    x->aic = 470.42469135782;
+    x->rows = 5;
+    for (size_t i = 0; i < x->rows; i++)
+        x->row[i] =
+            (struct likelihood_row){names[i], 1.23456789012 * (double)(i + 1), i == 3 ? NAN : 0.25};
+    for (size_t k = 0; k < f->a.levels; k++)
+        x->response[k] = f->a.level[k].response.mean + 0.05;
+    f->a.curve.likelihood = numbers(f, f->a.curve.points);
+    for (size_t i = 0; i < f->a.curve.points; i++)
+        f->a.curve.likelihood[i] = f->a.curve.mean[i] + 0.05;
+}
+
+static struct level_result *copied_levels(struct fixture *f)
+{
+    struct level_result *level = keep(f, mem_new(f->a.levels, sizeof *level));
+    memcpy(level, f->a.level, f->a.levels * sizeof *level);
+    return level;
+}
+
+/* Figures by level that do not exist. */
+static void void_levels(struct fixture *f, struct analysis *a)
+{
+    a->level = copied_levels(f);
+    a->curve = (struct curve_result){0, NULL, NULL, NULL, NULL, NULL};
+    for (size_t k = 0; k < a->levels; k++) {
+        struct level_result *l = &a->level[k];
+        set_spread(&l->response, NAN, NAN);
+        set_spread(&l->gain, NAN, NAN);
+        l->pr_positive = NAN;
+        l->pr_target = numbers(f, a->targets);
+        l->pr_meets = numbers(f, a->targets);
+        l->mcse_target = l->mcse_meets = numbers(f, a->targets);
+        for (size_t t = 0; t < a->targets; t++)
+            l->pr_target[t] = l->pr_meets[t] = NAN;
+    }
+}
+
+static void models(struct fixture *f)
+{
+    struct analysis *x = keep(f, mem_new(3, sizeof *x));
+    f->d.sensitivities = 3;
+    f->d.sensitivity = keep(f, mem_new(3, sizeof *f->d.sensitivity));
+    for (size_t i = 0; i < 3; i++) {
+        f->d.sensitivity[i] = f->d.model;
+        f->d.sensitivity[i].curve = i == 0 ? &walk : &emax;
+        x[i] = f->a;
+        x[i].model = &f->d.sensitivity[i];
+    }
+    x[0].curve.points = 0;
+    x[0].diagnostics.lack_of_fit_p = 0.031;
+    x[1].diagnostics.trusted = false;
+    x[2].diagnostics = (struct analysis_diagnostics){
+        .max_rhat = NAN, .min_ess_bulk = NAN, .kish = NAN, .lack_of_fit_p = NAN};
+    x[2].failure = words(f, "the posterior may be improper");
+    void_levels(f, &x[2]);
+    fill_likelihood(f);
+    f->a.diagnostics.lack_of_fit_p = 0.4;
+    f->a.sensitivities = 3;
+    f->a.sensitivity = x;
 }
 
 struct fixture *fixture_new(enum fixture_kind kind)
@@ -472,6 +549,8 @@ struct fixture *fixture_new(enum fixture_kind kind)
         distrust(f);
     if (kind == FIXTURE_FINAL)
         finish(f);
+    if (kind == FIXTURE_MODELS)
+        models(f);
     fill_draws(f);
     return f;
 }

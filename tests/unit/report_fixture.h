@@ -10,7 +10,10 @@ enum fixture_kind {
     FIXTURE_ITCH,       /* continuous, lower is better, placebo + 5 doses, 3 targets */
     FIXTURE_DAYS,       /* binary, 7 durations, no control, a closed level, an empty level */
     FIXTURE_DISTRUSTED, /* the itch analysis, not trusted */
-    FIXTURE_FINAL,      /* the itch analysis as the final one, with pending subjects */
+    FIXTURE_FINAL,      /* the itch analysis as the final one, with pending subjects; a likelihood
+                           fit that did not converge */
+    FIXTURE_MODELS,     /* the itch analysis with a likelihood fit and three sensitivity models: a
+                           sound one, one not trusted, one that could not be fitted */
     FIXTURE_MANY        /* 128 levels, labels that need escaping */
 };
 

@@ -179,6 +179,56 @@ static void distrust_takes_every_verdict_away(void)
     cJSON_Delete(tree);
 }
 
+static void likelihood_fit_has_nine_digits(void)
+{
+    static const char *const keys[] = {"converged", "message",    "log_likelihood",
+                                       "aic",       "parameters", NULL};
+    cJSON *tree = written(FIXTURE_MODELS), *failed = written(FIXTURE_FINAL);
+    keys_are(at(tree, "likelihood_fit"), keys);
+    CU_ASSERT_TRUE(cJSON_IsTrue(at(tree, "likelihood_fit/converged")));
+    CU_ASSERT_TRUE(cJSON_IsNull(at(tree, "likelihood_fit/message")));
+    CU_ASSERT_EQUAL(number_at(tree, "likelihood_fit/log_likelihood"), -231.212346);
+    CU_ASSERT_EQUAL(number_at(tree, "likelihood_fit/aic"), 470.424691);
+    CU_ASSERT_EQUAL(number_at(tree, "likelihood_fit/parameters/0/estimate"), 1.23456789);
+    CU_ASSERT_TRUE(cJSON_IsNull(at(tree, "likelihood_fit/parameters/3/se")));
+    CU_ASSERT_TRUE(cJSON_IsFalse(at(failed, "likelihood_fit/converged")));
+    CU_ASSERT_STRING_EQUAL(string_at(failed, "likelihood_fit/message"),
+                           "ED50 runs off beyond the levels.");
+    CU_ASSERT_TRUE(cJSON_IsNull(at(failed, "likelihood_fit/aic")));
+    CU_ASSERT_TRUE(cJSON_IsNull(at(failed, "likelihood_fit/parameters/0/estimate")));
+    cJSON_Delete(tree);
+    cJSON_Delete(failed);
+}
+
+static void sensitivity_models(void)
+{
+    static const char *const keys[] = {
+        "curve",      "order",          "spacing",     "decides",   "trusted",
+        "message",    "levels",         "targets",     "decisions", "final_success",
+        "parameters", "likelihood_fit", "diagnostics", NULL};
+    static const char *const level[] = {"label", "response", "gain", "pr_target", "pr_meets", NULL};
+    static const char *const condition[] = {"measure", "target", "gain", "value", "mcse", NULL};
+    cJSON *tree = written(FIXTURE_MODELS);
+    CU_ASSERT_EQUAL(cJSON_GetArraySize(at(tree, "sensitivity")), 3);
+    keys_are(at(tree, "sensitivity/0"), keys);
+    keys_are(at(tree, "sensitivity/0/levels/1"), level);
+    keys_are(at(tree, "sensitivity/0/decisions/0/conditions/0"), condition);
+    CU_ASSERT_TRUE(cJSON_IsFalse(at(tree, "sensitivity/0/decides")));
+    CU_ASSERT_STRING_EQUAL(string_at(tree, "sensitivity/0/curve"), "ndlm");
+    CU_ASSERT_EQUAL(number_at(tree, "sensitivity/0/diagnostics/lack_of_fit_p"), 0.031);
+    CU_ASSERT_EQUAL(number_at(tree, "sensitivity/0/levels/1/response/sd"), 0.31);
+    CU_ASSERT_PTR_NULL(at(tree, "sensitivity/1/order"));
+    CU_ASSERT_TRUE(cJSON_IsFalse(at(tree, "sensitivity/1/trusted")));
+    CU_ASSERT_STRING_EQUAL(string_at(tree, "sensitivity/2/message"),
+                           "the posterior may be improper");
+    CU_ASSERT_TRUE(cJSON_IsNull(at(tree, "sensitivity/2/levels/1/response/mean")));
+    CU_ASSERT_TRUE(cJSON_IsNull(at(tree, "sensitivity/2/levels/1/pr_target/ED90")));
+    /* what decides is untouched */
+    CU_ASSERT_TRUE(cJSON_IsTrue(at(tree, "diagnostics/trusted")));
+    CU_ASSERT_EQUAL(number_at(tree, "diagnostics/lack_of_fit_p"), 0.4);
+    cJSON_Delete(tree);
+}
+
 static void draws_have_one_row_a_draw(void)
 {
     struct fixture *f = fixture_new(FIXTURE_ITCH);
@@ -229,6 +279,8 @@ static const struct unit_test tests[] = {
     {"conditions say what they compare", conditions_say_what_they_compare},
     {"absent numbers are null", absent_numbers_are_null},
     {"distrust takes every verdict away", distrust_takes_every_verdict_away},
+    {"likelihood fit: nine digits, nulls", likelihood_fit_has_nine_digits},
+    {"sensitivity models", sensitivity_models},
     {"draws.csv has one row a draw", draws_have_one_row_a_draw},
     {"draws.csv quotes labels", draws_quote_labels},
     {"raw means, rates and intervals", raw_intervals},

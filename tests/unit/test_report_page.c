@@ -23,8 +23,8 @@ static char *written(writer_fn *write, enum fixture_kind kind)
     return text_take(&t);
 }
 
-static const enum fixture_kind kinds[] = {FIXTURE_ITCH, FIXTURE_DAYS, FIXTURE_DISTRUSTED,
-                                          FIXTURE_FINAL, FIXTURE_MANY};
+static const enum fixture_kind kinds[] = {FIXTURE_ITCH,  FIXTURE_DAYS, FIXTURE_DISTRUSTED,
+                                          FIXTURE_FINAL, FIXTURE_MANY, FIXTURE_MODELS};
 
 /* "nan" or "inf" as a word of its own, as printf would write a number that does not exist. */
 static size_t broken_numbers(const char *s)
@@ -169,6 +169,69 @@ static void terminal_tables_line_up(void)
     mem_free(text);
 }
 
+static void likelihood_stands_beside_the_posterior(void)
+{
+    char *page = written(analysis_page, FIXTURE_MODELS);
+    char *text = written(analysis_text, FIXTURE_MODELS);
+    /* six levels and the key, wide and narrow; the curve and its key */
+    CU_ASSERT_EQUAL(markup_count(page, "class=\"likelihood-mark\""), 2 * (6 + 1));
+    CU_ASSERT_EQUAL(markup_count(page, "class=\"likelihood\""), 2 * (1 + 1));
+    CU_ASSERT_EQUAL(markup_count(page, ">likelihood estimate</text>"), 2);
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, ">Likelihood mean</th>"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "drift_variance"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(text, "log-likelihood -231.212 and AIC 470.425"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(text, "normal, mean 0, sd 4; set by the prior"));
+    CU_ASSERT_EQUAL(markup_count(text, "; set by the prior"), 1);
+    CU_ASSERT_PTR_NOT_NULL(strstr(text, "\n  ED50         "));
+    CU_ASSERT_PTR_NOT_NULL(strstr(text, "3.70  0.25"));
+    mem_free(page);
+    mem_free(text);
+}
+
+static void a_likelihood_fit_that_does_not_exist(void)
+{
+    char *none = written(analysis_text, FIXTURE_ITCH);
+    char *failed = written(analysis_text, FIXTURE_FINAL);
+    char *page = written(analysis_page, FIXTURE_FINAL);
+    CU_ASSERT_PTR_NOT_NULL(strstr(none, "There is no likelihood fit"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(failed, "ED50 runs off beyond the levels."));
+    CU_ASSERT_PTR_NULL(strstr(failed, "Likelihood"));
+    CU_ASSERT_PTR_NULL(strstr(page, "class=\"likelihood"));
+    CU_ASSERT_PTR_NULL(strstr(page, "Likelihood mean"));
+    mem_free(none);
+    mem_free(failed);
+    mem_free(page);
+}
+
+static void other_models_stand_beside(void)
+{
+    char *page = written(analysis_page, FIXTURE_MODELS);
+    char *text = written(analysis_text, FIXTURE_MODELS);
+    CU_ASSERT_EQUAL(markup_count(page, "<figure "), 7);
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "1: ndlm"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "2: emax (not to be used)"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "3: emax (not fitted)"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "It could not be fitted: the posterior may be improper."));
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "they decide nothing"));
+    /* six levels times four models, less the one without numbers */
+    CU_ASSERT_EQUAL(markup_count(page, "class=\"model-mark model-"), 2 * (6 * 3 + 4));
+    CU_ASSERT_PTR_NOT_NULL(strstr(text, "Sensitivity model 3 could not be fitted"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(text, "computation of sensitivity model 2 cannot be trusted"));
+    CU_ASSERT_EQUAL(broken_numbers(text), 0);
+    mem_free(page);
+    mem_free(text);
+}
+
+static void fit_of_the_level_means(void)
+{
+    char *page = written(analysis_page, FIXTURE_MODELS);
+    char *none = written(analysis_page, FIXTURE_ITCH);
+    CU_ASSERT_PTR_NOT_NULL(strstr(page, "from the curve in 0.400 of repetitions"));
+    CU_ASSERT_PTR_NOT_NULL(strstr(none, "fewer than two levels have outcomes"));
+    mem_free(page);
+    mem_free(none);
+}
+
 /* The checker itself can fail. */
 static void the_checker_sees_faults(void)
 {
@@ -194,6 +257,10 @@ static const struct unit_test tests[] = {
     {"a fraction is relative to the levels studied", a_fraction_is_relative_to_the_levels},
     {"a final analysis with pending subjects is marked", final_with_pending_is_marked},
     {"terminal tables line up", terminal_tables_line_up},
+    {"the likelihood stands beside the posterior", likelihood_stands_beside_the_posterior},
+    {"a likelihood fit that does not exist", a_likelihood_fit_that_does_not_exist},
+    {"other models stand beside", other_models_stand_beside},
+    {"fit of the level means", fit_of_the_level_means},
     {"the checker sees faults", the_checker_sees_faults},
     UNIT_END};
 
