@@ -122,6 +122,7 @@ void analysis_release(struct analysis *a)
     mean_curve_release(&a->curve);
     caution_release(a);
     sensitivity_release(a);
+    likelihood_fit_release(&a->likelihood);
     mem_free(a->failure);
     *a = (struct analysis){0};
 }
@@ -276,6 +277,7 @@ static void clear(struct analysis *out, const struct analysis_request *r)
     caution_release(out);
     mean_curve_release(&out->curve);
     sensitivity_release(out);
+    likelihood_fit_release(&out->likelihood);
     out->number = r->number;
     out->final = r->final;
     out->diagnostics =

@@ -112,6 +112,14 @@ bool likelihood_is_shown(const struct analysis *a)
     return a->likelihood.exists && a->likelihood.converged;
 }
 
+bool likelihood_has_levels(const struct analysis *a)
+{
+    for (size_t k = 0; k < a->levels && likelihood_is_shown(a); k++)
+        if (!isnan(a->likelihood.response[k]))
+            return true;
+    return false;
+}
+
 double share_so_far(const struct analysis_report *r, size_t level)
 {
     const double n = (double)r->data->subjects;
@@ -268,7 +276,7 @@ bool level_figure_exists(const struct level_figure *f, const struct analysis_rep
     if (f->needs == NEEDS_GAIN)
         return design_has_gain(r->d);
     if (f->needs == NEEDS_LIKELIHOOD)
-        return likelihood_is_shown(r->a);
+        return likelihood_has_levels(r->a);
     return f->needs == NEEDS_NOTHING || r->d->type == ENDPOINT_CONTINUOUS;
 }
 

@@ -51,6 +51,8 @@ void level_figure_add(struct text *out, const struct level_figure *f,
 
 /* Whether there are likelihood estimates to show. */
 bool likelihood_is_shown(const struct analysis *a);
+/* Whether they include levels (not for a walk). */
+bool likelihood_has_levels(const struct analysis *a);
 /* Share of all subjects randomized so far (0 when there are none). */
 double share_so_far(const struct analysis_report *r, size_t level);
 /* Whether any next share exists (not at the last analysis, not when distrusted). */

@@ -79,11 +79,11 @@ void words_likelihood(struct text *out, const struct analysis *a)
 {
     const struct likelihood_fit *f = &a->likelihood;
     if (!f->exists) {
-        text_add(out, "There is no likelihood fit.");
+        text_add(out, "There is no likelihood fit of this curve to this kind of endpoint.");
         return;
     }
     if (!f->converged) {
-        text_addf(out, "There are no likelihood estimates: %s", f->message ? f->message : "");
+        text_addf(out, "There are no likelihood estimates. %s", f->message ? f->message : "");
         return;
     }
     text_add(out, "The likelihood fit (maximum likelihood; it looks at no prior but the fixed "

@@ -31,7 +31,7 @@ static void response_words(struct text *out, const struct analysis_report *r)
         page_paragraph(out, NULL,
                        "The line and its band continue the curve between the levels "
                        "studied; only the levels were studied.");
-    if (likelihood_is_shown(r->a))
+    if (likelihood_has_levels(r->a))
         page_paragraph(out, NULL,
                        r->a->curve.points > 0
                            ? "Short dashes on the broken line are the likelihood fit of the same "
@@ -74,7 +74,7 @@ static void response_chart(struct text *out, struct sheet *s, const char *label)
         .curve = curve->mean,
         .curve_low = curve->q025,
         .curve_high = curve->q975,
-        .likelihood_name = likelihood_is_shown(r->a) ? "likelihood estimate" : NULL,
+        .likelihood_name = likelihood_has_levels(r->a) ? "likelihood estimate" : NULL,
         .likelihood = s->column[7],
         .likelihood_curve = curve->likelihood,
         .reference = r->d->has_reference_number ? r->d->reference_number : NAN,
@@ -88,7 +88,7 @@ void page_response(struct text *out, struct sheet *s, const char *const *keys)
 {
     sheet_figure_open(out, s, "Response by level", true, s->n);
     response_chart(out, s,
-                   likelihood_is_shown(s->r->a)
+                   likelihood_has_levels(s->r->a)
                        ? "Chart of the response by level: raw data and posterior, each with 95% "
                          "intervals, and likelihood estimates. The numbers are in the table that "
                          "follows."

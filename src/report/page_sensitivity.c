@@ -66,7 +66,8 @@ void page_sensitivity(struct text *out, struct sheet *s)
     page_figure_below(out);
     page_table(out, table_models(r),
                "Fit and trust of each model. Fit p: posterior predictive p of the level means; "
-               "small values say that the curve does not fit. AIC is the likelihood fit's.");
+               "small values say that the curve does not fit. AIC is the likelihood fit's; that of "
+               "a walk (ndlm) is of another kind and not to be compared with a curve's.");
     if (r->a->targets > 0)
         page_table(out, table_models_by_target(r),
                    "Targets under each model: the level it would select, the probability that this "

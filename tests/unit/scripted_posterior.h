@@ -10,6 +10,7 @@
 
 #include "base/mem.h"
 #include "base/vecmath.h"
+#include "posterior/likelihood_fit.h"
 #include "posterior/posterior.h"
 #include "tiny_world.h"
 
@@ -18,6 +19,26 @@ enum { LEVELS = 3, CALLS = 32, SECOND = 20000 };
 struct plan {
     const struct design *d;
 };
+
+/* Nor is there a likelihood fit. */
+void likelihood_fit_run(struct likelihood_fit *out, const struct design *d, const struct model *m,
+                        const struct level_data *data)
+{
+    (void)d, (void)m, (void)data;
+    *out = (struct likelihood_fit){.exists = false};
+}
+
+void likelihood_fit_release(struct likelihood_fit *f)
+{
+    (void)f;
+}
+
+bool likelihood_fit_at(const struct likelihood_fit *f, const struct design *d,
+                       const struct model *m, double x, double *response)
+{
+    (void)f, (void)d, (void)m, (void)x, (void)response;
+    return false;
+}
 
 struct posterior {
     const struct design *d;

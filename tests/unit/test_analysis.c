@@ -321,6 +321,32 @@ static void the_prior(void)
     release(&x);
 }
 
+/* Levels on their own: the estimates are the raw means; emax has a curve between the levels. */
+static void the_likelihood_fit(void)
+{
+    struct world x;
+    start(&x, flat_free);
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_TRUE(x.a.likelihood.exists && x.a.likelihood.converged);
+    for (size_t k = 0; k < 4; k++)
+        CU_ASSERT_DOUBLE_EQUAL(x.a.likelihood.response[k], x.data.mean[k], 1e-9);
+    x.r.live = false; /* a simulated analysis has none, also where one stood before */
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_FALSE(x.a.likelihood.exists);
+    release(&x);
+    start(&x, emax);
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_TRUE(x.a.likelihood.converged);
+    CU_ASSERT_EQUAL_FATAL(x.a.curve.points, 61);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.curve.likelihood[0], x.a.likelihood.response[0], 1e-9);
+    CU_ASSERT_DOUBLE_EQUAL(x.a.curve.likelihood[60], x.a.likelihood.response[3], 1e-9);
+    release(&x);
+    start(&x, binary_walk);
+    CU_ASSERT_EQUAL(run(&x), STATUS_OK);
+    CU_ASSERT_FALSE(x.a.likelihood.exists);
+    release(&x);
+}
+
 static void the_last_analysis(void)
 {
     struct world x;
@@ -343,6 +369,7 @@ static const struct unit_test tests[] = {
     {"identical replicates are refused", identical_replicates_are_refused},
     {"no data: warnings, not errors", sparse_data_give_warnings_not_errors},
     {"the prior", the_prior},
+    {"the likelihood fit", the_likelihood_fit},
     {"the last analysis", the_last_analysis},
     UNIT_END};
 
