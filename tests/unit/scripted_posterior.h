@@ -20,26 +20,6 @@ struct plan {
     const struct design *d;
 };
 
-/* Nor is there a likelihood fit. */
-void likelihood_fit_run(struct likelihood_fit *out, const struct design *d, const struct model *m,
-                        const struct level_data *data)
-{
-    (void)d, (void)m, (void)data;
-    *out = (struct likelihood_fit){.exists = false};
-}
-
-void likelihood_fit_release(struct likelihood_fit *f)
-{
-    (void)f;
-}
-
-bool likelihood_fit_at(const struct likelihood_fit *f, const struct design *d,
-                       const struct model *m, double x, double *response)
-{
-    (void)f, (void)d, (void)m, (void)x, (void)response;
-    return false;
-}
-
 struct posterior {
     const struct design *d;
     double *x, *second;
@@ -195,6 +175,7 @@ bool posterior_curve_at(const struct plan *p, const struct draws *d, double x, d
     return false;
 }
 
+/* Nor is there a likelihood fit. */
 void likelihood_fit_run(struct likelihood_fit *out, const struct design *d, const struct model *m,
                         const struct level_data *data)
 {
