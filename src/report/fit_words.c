@@ -104,10 +104,15 @@ void words_lack_of_fit(struct text *out, const struct analysis *a)
         return;
     }
     figure_probability(&shown, p, (struct digits){3, 0});
+    const char *s = text_s(&shown);
+    const bool less = s[0] == '<', more = s[0] == '>';
     text_addf(out,
-              "The level means lie at least as far from the curve in %s of repetitions of the "
+              "The level means lie at least as far from the curve in %s%s of repetitions of the "
               "trial under the fitted model (posterior predictive p); small values say that the "
               "curve does not fit the level means.",
-              text_s(&shown));
+              less   ? "less than "
+              : more ? "more than "
+                     : "",
+              less || more ? s + 1 : s);
     text_release(&shown);
 }

@@ -41,11 +41,11 @@ static const struct likelihood_row *likelihood_find(const struct likelihood_fit 
     return NULL;
 }
 
-/* Two significant digits of the standard error. */
+/* Three significant digits of the standard error. */
 static void likelihood_cells(struct table *t, const struct likelihood_row *x)
 {
     const struct digits g =
-        x ? digits_for(x->se / 10, fabs(x->estimate), 4) : (struct digits){0, 0};
+        x ? digits_for(x->se / 100, fabs(x->estimate), 4) : (struct digits){0, 0};
     number_cell(t, x ? x->estimate : NAN, g);
     number_cell(t, x ? x->se : NAN, g);
 }

@@ -24,7 +24,7 @@ void add_model_name(struct text *out, const struct analysis_report *r, size_t i)
 {
     const struct analysis *a = report_of_model(r, i).a;
     if (i == 0)
-        text_add(out, "design's model: ");
+        text_add(out, "design: ");
     else
         text_addf(out, "%zu: ", i);
     words_model_name(out, a->model);

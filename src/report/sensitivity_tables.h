@@ -11,7 +11,7 @@
 
 /* The same report with model `i` in the place of the analysis. */
 struct analysis_report report_of_model(const struct analysis_report *r, size_t i);
-/* "design's model: emax", "2: ndlm, order 2", "(not to be used)" where distrusted. */
+/* "design: emax", "2: ndlm, order 2", "(not to be used)" where distrusted. */
 void add_model_name(struct text *out, const struct analysis_report *r, size_t i);
 
 struct table *table_models(const struct analysis_report *r); /* fit and trust, a row a model */

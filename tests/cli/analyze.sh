@@ -59,6 +59,26 @@ disk_full_keeps_old() {
     ( trap '' XFSZ; ulimit -f 4; exec "$TERRACE" analyze "$d" "$data" -o dk --force --seed 3 >/dev/null 2>err ); status=$?
     ended 4 && diff -r dk dk.before
 }
+sensitivity() {
+    sed 's/"subjects": 60/"sensitivity": [{"curve": "linear"}, {"curve": "ndlm"}], "subjects": 60/' "$d" >sens.json
+    run analyze "$d" "$data" --json -o s0; cp out plain
+    run analyze sens.json "$data" --json -o s1; ended 0 && out_has '"decides": false' && out_has '"curve": "ndlm"' || return 1
+    # what decides is the same with and without them
+    sed '/"sensitivity"/,$d; /sha256/d' plain >a; sed '/"sensitivity"/,$d; /sha256/d' out >b; cmp a b
+    grep -q 'Other models' s1/report.html && ! grep -q 'Other models' s0/report.html
+}
+# No spread within the levels: a prior on sd that does not vanish at 0 may leave no posterior.
+sensitivity_that_fails() {
+    local prior='"priors": {"variance": {"inverse_gamma": {"shape": 2, "scale": 2}}}'
+    printf 'subject,level,response\n1,A,1\n2,A,1\n3,B,2\n4,B,2\n5,B,2\n' >flat.csv
+    cat >flat.json <<END
+{"terrace": 1, "title": "t", "levels": {"control": "A", "list": [{"label": "A", "value": 0}, {"label": "B", "value": 1}]},
+ "endpoint": {"name": "y", "type": "continuous", "better": "higher", "range": [0, 10]},
+ "model": {"curve": "linear", $prior}, "sensitivity": [{"curve": "independent"}], "subjects": 10, "analyses": {"at": [5]}}
+END
+    run analyze flat.json flat.csv -o sf1
+    ended 0 && out_has "1: independent (not fitted)" && out_has "Sensitivity model 1 could not be fitted" && grep -q '"trusted": true' sf1/analysis.json
+}
 no_escapes() { run analyze "$d" "$data" -o ne; ! grep -q "$(printf '\033')" out err; }
 progress() { run analyze "$d" "$data" -o pr --progress; ended 0 && err_has "14 subjects read"; }
 nothing_private() { run analyze "$d" "$data" -o np; ended 0 && ! grep -rqF "$work" np && ! grep -rqF "$(hostname)" np; }
@@ -89,6 +109,8 @@ try "no such data" missing_data
 try "standard output is full: nothing is left" stdout_full
 try "disk full: nothing is left" disk_full
 try "disk full: the old result stays" disk_full_keeps_old
+try "sensitivity models stand beside" sensitivity
+try "a sensitivity model that fails is a note" sensitivity_that_fails
 try "no escapes when redirected" no_escapes
 try "--progress" progress
 try "no path or machine in a result" nothing_private
