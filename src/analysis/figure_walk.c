@@ -10,10 +10,20 @@ static size_t count_conditions(const struct design *d)
     return count;
 }
 
-size_t figure_count_all(const struct design *d)
+static size_t count_asked(const struct design *d)
 {
     const size_t positive = design_has_gain(d) ? d->levels : 0;
     return d->targets * (2 * d->levels + 1) + positive + count_conditions(d);
+}
+
+bool figures_are_middles(const struct design *d)
+{
+    return count_asked(d) == 0;
+}
+
+size_t figure_count_all(const struct design *d)
+{
+    return figures_are_middles(d) ? d->levels : count_asked(d);
 }
 
 /* 2 levels + 1 figures a target: is it, meets it, none. */
@@ -64,6 +74,9 @@ struct walked_figure figure_at(const struct judgement *j, const struct analysis 
     const struct design *d = j->d;
     const size_t of_targets = d->targets * (2 * d->levels + 1);
     const size_t positive = design_has_gain(d) ? d->levels : 0;
+    if (figures_are_middles(d))
+        return (struct walked_figure){
+            .kind = FIGURE_MIDDLE, .value = j->pr_above[i], .mcse = j->mcse_above[i], .level = i};
     if (i < of_targets)
         return target_figure(j, i);
     i -= of_targets;
@@ -91,6 +104,10 @@ void figure_name(struct text *out, const struct design *d, const struct walked_f
         break;
     case FIGURE_POSITIVE:
         text_addf(out, "the probability that the gain of %s is above 0", label);
+        break;
+    case FIGURE_MIDDLE:
+        text_addf(out, "the probability that the response at %s is above its posterior mean",
+                  label);
         break;
     case FIGURE_MEASURE:
         f->condition->measure->sentence(f->condition, d, out);

@@ -12,7 +12,14 @@
 #include "analysis/judge.h"
 #include "base/text.h"
 
-enum figure_kind { FIGURE_TARGET, FIGURE_MEETS, FIGURE_NONE, FIGURE_POSITIVE, FIGURE_MEASURE };
+enum figure_kind {
+    FIGURE_TARGET,
+    FIGURE_MEETS,
+    FIGURE_NONE,
+    FIGURE_POSITIVE,
+    FIGURE_MEASURE,
+    FIGURE_MIDDLE
+};
 
 struct walked_figure {
     enum figure_kind kind;
@@ -22,6 +29,9 @@ struct walked_figure {
     bool close;                        /* FIGURE_MEASURE: within 3 mcse of its threshold */
 };
 
+/* Whether a design asks for no probability at all (a fit): the figures are then Pr(response above
+ * its middle), by level (judge_middles). */
+bool figures_are_middles(const struct design *d);
 /* How many figures a design has (open levels or not), and the i-th of them. Those of closed levels
  * and of the control that are 0 by definition have mcse 0; without gains pr_positive is not
  * there. `a` holds the conditions evaluated on `j`. */

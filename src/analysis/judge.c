@@ -27,7 +27,9 @@ struct judgement *judgement_new(const struct design *d)
     j->selected = mem_new(d->targets, sizeof *j->selected);
     j->close = mem_new(d->targets, sizeof *j->close);
     j->pr_positive = mem_new(d->levels, sizeof(double));
-    j->mcse_positive = mem_new(d->levels, sizeof(double));
+    double **by_level[] = {&j->mcse_positive, &j->middle, &j->pr_above, &j->mcse_above};
+    for (size_t i = 0; i < sizeof by_level / sizeof *by_level; i++)
+        *by_level[i] = mem_new(d->levels, sizeof(double));
     j->tally = tally_new(d);
     j->level = mem_new(1, sizeof *j->level);
     judgement_open(j, NULL);
@@ -38,10 +40,11 @@ void judgement_free(struct judgement *j)
 {
     if (!j)
         return;
-    void *owned[] = {j->open,       j->pr_target,   j->pr_meets,      j->mcse_target, j->mcse_meets,
-                     j->ess_target, j->pr_none,     j->mcse_none,     j->ess_none,    j->selected,
-                     j->close,      j->pr_positive, j->mcse_positive, j->work,        j->level,
-                     j->bar,        j->found};
+    void *owned[] = {j->open,          j->pr_target,  j->pr_meets, j->mcse_target,
+                     j->mcse_meets,    j->ess_target, j->pr_none,  j->mcse_none,
+                     j->ess_none,      j->selected,   j->close,    j->pr_positive,
+                     j->mcse_positive, j->work,       j->level,    j->bar,
+                     j->found,         j->middle,     j->pr_above, j->mcse_above};
     for (size_t i = 0; i < sizeof owned / sizeof *owned; i++)
         mem_free(owned[i]);
     tally_free(j->tally);
@@ -138,6 +141,22 @@ void judge_counts(struct judgement *j, const struct draws *draws)
             indicator_errors(j, t);
     else
         errors_of_share(j);
+}
+
+void judge_middles(struct judgement *j, const struct judgement *other)
+{
+    const size_t n = j->draws.n;
+    for (size_t k = 0; k < j->d->levels; k++) {
+        const double *m = judge_row(j, k, false);
+        size_t count = 0;
+        j->middle[k] = other ? other->middle[k] : diag_mean(m, n);
+        for (size_t i = 0; i < n; i++) {
+            j->work[i] = m[i] > j->middle[k] ? 1 : 0;
+            count += m[i] > j->middle[k];
+        }
+        j->pr_above[k] = (double)count / (double)n;
+        j->mcse_above[k] = judge_mcse_share(j, j->work, j->pr_above[k]);
+    }
 }
 
 /* ---- selection (interface, section 5) ---- */

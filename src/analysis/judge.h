@@ -30,6 +30,9 @@ struct judgement {
     int *selected;                                           /* owned; [target] */
     bool *close;                                             /* owned; [target] */
     double *pr_positive, *mcse_positive; /* owned; [level]; filled by measure_gains */
+    /* owned; [level]; filled by judge_middles: Pr(response above `middle`), where nothing else is
+     * asked of the draws */
+    double *middle, *pr_above, *mcse_above;
 
     struct tally *tally;
     double *work; /* one value a draw, for measures */
@@ -50,6 +53,10 @@ void judgement_open(struct judgement *j, const bool *closed);
 void judge_counts(struct judgement *j, const struct draws *draws);
 /* `selected` and `close`, from the counts. */
 void judge_selection(struct judgement *j);
+
+/* Pr(response above a number in its middle): the posterior means of these draws, or those of
+ * `other`. */
+void judge_middles(struct judgement *j, const struct judgement *other);
 
 /* Effective draws behind an average over the draws of x (by_ess or not). */
 double judge_ess(const struct judgement *j, const double *x);

@@ -64,6 +64,8 @@ static void judge_first(struct live_run *x, const struct draws *draws)
     judge_counts(x->j, draws);
     judge_selection(x->j);
     measure_gains(x->j);
+    if (figures_are_middles(x->j->d))
+        judge_middles(x->j, NULL);
     decide(x->out, x->j, x->r);
 }
 
@@ -77,6 +79,8 @@ static void judge_second(struct live_run *x, const struct draws *draws)
     judge_counts(j, draws);
     memcpy(j->selected, x->j->selected, x->j->d->targets * sizeof *j->selected);
     measure_gains(j);
+    if (figures_are_middles(j->d))
+        judge_middles(j, x->j);
     decide(x->other, j, x->r);
 }
 

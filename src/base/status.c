@@ -48,6 +48,16 @@ enum status err_add(struct err *e, enum status status, const char *file, long li
     return status;
 }
 
+void err_move(struct err *to, struct err *from)
+{
+    for (size_t i = 0; i < from->count; i++)
+        *fault_new(to) = from->faults[i];
+    if (from->status > to->status)
+        to->status = from->status;
+    mem_free(from->faults);
+    *from = (struct err)ERR_INIT;
+}
+
 enum status err_system(struct err *e, const char *file, const char *what)
 {
     char reason[128];

@@ -47,6 +47,9 @@ enum status err_add(struct err *e, enum status status, const char *file, long li
                     const char *pointer, const char *format, ...)
     __attribute__((format(printf, 6, 7)));
 
+/* All faults of `from` go to the end of `to`; `from` is empty afterwards. */
+void err_move(struct err *to, struct err *from);
+
 /* Adds the fault for a failed system call: "cannot WHAT: strerror(errno)", STATUS_SYSTEM. */
 enum status err_system(struct err *e, const char *file, const char *what);
 

@@ -10,7 +10,6 @@
 #define LATER(id, word, what) \
     static const struct command id = {word, "", 0, what, NULL, NULL, NULL, NULL}
 
-LATER(command_fit, "fit", "one curve to one table, no design");
 LATER(command_simulate, "simulate", "operating characteristics over the scenarios");
 LATER(command_gather, "gather", "one result from the parts of a run");
 LATER(command_replay, "replay", "one simulated trial, analysis by analysis");

@@ -34,6 +34,13 @@ static cJSON *parse_tree(const char *bytes, size_t length, const char *file, str
 enum status design_parse(struct design **out, const char *bytes, size_t length, const char *file,
                          const struct vocabulary *v, struct err *e)
 {
+    return design_parse_scaled(out, bytes, length, file, v, NULL, e);
+}
+
+enum status design_parse_scaled(struct design **out, const char *bytes, size_t length,
+                                const char *file, const struct vocabulary *v,
+                                const struct prior_scales *scales, struct err *e)
+{
     struct reader r = {.v = v, .file = file, .e = e};
     const size_t before = e->count;
     struct design *d;
@@ -45,6 +52,9 @@ enum status design_parse(struct design **out, const char *bytes, size_t length, 
     fields_check(r.tree, &design_fields, v, file, e);
     d = r.d = mem_new(1, sizeof *d);
     d->file = mem_text(file);
+    d->has_scales = scales != NULL;
+    if (scales)
+        d->scales = *scales;
     sha256_hex(d->sha256, bytes, length);
     if (cJSON_IsObject(r.tree)) {
         reader_fill(&r);

@@ -142,6 +142,11 @@ struct level_alias {
     size_t level;
 };
 
+/* Scale and centre of default priors, response scale. */
+struct prior_scales {
+    double A, C;
+};
+
 struct design {
     char *file; /* as the user named it */
     char sha256[SHA256_HEX], resolved_sha256[SHA256_HEX];
@@ -165,6 +170,8 @@ struct design {
     double observed_after;
     bool has_range;
     double range[2];
+    bool has_scales; /* `fit` only: default priors from the data, not from the range */
+    struct prior_scales scales;
     enum dropped_rule dropped;
 
     struct model model;
@@ -199,6 +206,10 @@ enum status design_read(struct design **out, const char *path, const struct voca
                         struct err *e);
 enum status design_parse(struct design **out, const char *bytes, size_t length, const char *file,
                          const struct vocabulary *v, struct err *e);
+/* The same with scales of default priors that stand in for those of the range. */
+enum status design_parse_scaled(struct design **out, const char *bytes, size_t length,
+                                const char *file, const struct vocabulary *v,
+                                const struct prior_scales *scales, struct err *e);
 void design_free(struct design *d);
 
 /* The JSON Schema (2020-12), made from the same field table as the parser. */

@@ -208,6 +208,9 @@ static struct default_scales scales_of(const struct design *d, const struct mode
 
     if (d->type == ENDPOINT_BINARY) {
         s.A = BINARY_SCALE;
+    } else if (d->has_scales) {
+        s.A = d->scales.A;
+        s.C = d->scales.C;
     } else if (d->has_range) {
         s.A = (d->range[1] - d->range[0]) / 4;
         s.C = d->range[0] + (d->range[1] - d->range[0]) / 2;

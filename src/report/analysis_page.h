@@ -13,5 +13,7 @@ void analysis_page(struct text *out, const struct analysis_report *r);
 void page_add_summary(struct text *out, const struct analysis_report *r); /* text first */
 void page_add_figures(struct text *out, const struct analysis_report *r);
 void page_add_details(struct text *out, const struct analysis_report *r); /* parameters, origin */
+void page_add_parameters(struct text *out, const struct analysis_report *r);
+void page_add_computation(struct text *out, const struct analysis_report *r);
 
 #endif

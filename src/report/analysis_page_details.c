@@ -11,7 +11,7 @@
 #include "report/page.h"
 #include "report/parameter_tables.h"
 
-static void parameters(struct text *out, const struct analysis_report *r)
+void page_add_parameters(struct text *out, const struct analysis_report *r)
 {
     page_section_open(out, "parameters", "Parameters of the model");
     struct text t = TEXT_INIT;
@@ -37,7 +37,7 @@ static void row(struct table *t, const char *name, const char *value)
     table_cell(t, value);
 }
 
-static void computation(struct text *out, const struct analysis_report *r)
+void page_add_computation(struct text *out, const struct analysis_report *r)
 {
     const struct analysis_diagnostics *g = &r->a->diagnostics;
     struct table *t = table_new();
@@ -111,8 +111,8 @@ static void cautions(struct text *out)
 
 void page_add_details(struct text *out, const struct analysis_report *r)
 {
-    parameters(out, r);
-    computation(out, r);
+    page_add_parameters(out, r);
+    page_add_computation(out, r);
     origin(out, r);
     cautions(out);
 }

@@ -285,7 +285,10 @@ void words_computation(struct text *out, const struct analysis_report *r)
         return;
     text_addf(out, " A second, independent method (%s) differs by at most ", g->second_name);
     figure_error(out, g->second_difference);
-    text_add(out, " in any probability or measure.");
+    text_add(out, r->d->targets == 0 && r->d->decisions == 0 && !design_has_gain(r->d)
+                      ? " in the probability that the response at a level lies above its posterior "
+                        "mean."
+                      : " in any probability or measure.");
 }
 
 /* ---- what to distrust ---- */
