@@ -113,7 +113,7 @@ PLAIN := $(filter-out $(ISA_SOURCES),$(SOURCES))
 ASSETS := $(wildcard src/report/page.css src/report/page.js)
 OBJECTS := $(PLAIN:%.c=$(O)/%.o) \
     $(foreach isa,$(ISAS),$(ISA_PRESENT:%.c=$(O)/%.$(isa).o)) \
-    $(if $(ASSETS),$(O)/gen/page_assets.o)
+    $(if $(ASSETS),$(O)/gen/page_assets.o) $(O)/gen/source_digest.o
 HEADERS := $(wildcard src/*/*.h models/*.h)
 
 TEST_SOURCES := $(wildcard tests/unit/test_*.c)
@@ -156,7 +156,12 @@ $(GEN)/page_assets.c: $(ASSETS) tests/workshop/embed.sh
 	@mkdir -p $(@D)
 	@echo "  TEXT  $@"
 	$(Q)sh tests/workshop/embed.sh report/page.h $(ASSETS) > $@
-$(O)/gen/page_assets.o: $(GEN)/page_assets.c $(O)/.flags
+# The digest of all sources: made every time, written when it is another one.
+$(GEN)/source_digest.c: FORCE
+	@mkdir -p $(@D)
+	@sh tests/workshop/source_hash.sh --c > $@.new
+	@if cmp -s $@.new $@; then rm $@.new; else mv $@.new $@; fi
+$(O)/gen/%.o: $(GEN)/%.c $(O)/.flags
 	@mkdir -p $(@D)
 	@echo "  CC    $@"
 	$(Q)$(CC) $(CPPFLAGS) $(FLAGS) -MMD -MP -c -o $@ $<
