@@ -64,8 +64,8 @@ sensitivity() {
     run analyze "$d" "$data" --json -o s0; cp out plain
     run analyze sens.json "$data" --json -o s1; ended 0 && out_has '"decides": false' && out_has '"curve": "ndlm"' || return 1
     # what decides is the same with and without them
-    sed '/"sensitivity"/,$d; /sha256/d' plain >a; sed '/"sensitivity"/,$d; /sha256/d' out >b
-    cmp a b && [ -s a ] && grep -q 'Other models' s1/report.html && ! grep -q 'Other models' s0/report.html
+    sed '/"sensitivity"/,$d; /sha256/d' plain >deciding0; sed '/"sensitivity"/,$d; /sha256/d' out >deciding1
+    cmp deciding0 deciding1 && [ -s deciding0 ] && grep -q 'Other models' s1/report.html && ! grep -q 'Other models' s0/report.html
 }
 # No spread within the levels: a prior on sd that does not vanish at 0 may leave no posterior.
 sensitivity_that_fails() {
