@@ -5,12 +5,10 @@
 #include "base/base.h"
 #include "base/mem.h"
 
-enum { TABLE_COLUMNS_MAX = 64 };
-
 struct table {
     size_t columns, cells, capacity;
-    char *heading[TABLE_COLUMNS_MAX];
-    bool number[TABLE_COLUMNS_MAX];
+    char **heading;         /* owned, by column */
+    bool *number;           /* owned, by column */
     char **cell;            /* owned, row-major */
     const char **row_class; /* one per cell slot; read at the first cell of a row */
     const char *mark;
@@ -30,6 +28,8 @@ void table_free(struct table *t)
         mem_free(t->heading[i]);
     for (size_t i = 0; i < t->cells; i++)
         mem_free(t->cell[i]);
+    mem_free(t->heading);
+    mem_free(t->number);
     mem_free(t->cell);
     mem_free(t->row_class);
     text_release(&t->open);
@@ -38,8 +38,10 @@ void table_free(struct table *t)
 
 void table_column(struct table *t, const char *heading, bool number)
 {
-    if (t->columns == TABLE_COLUMNS_MAX || t->cells > 0)
-        BUG("too many columns, or a column after a cell");
+    if (t->cells > 0)
+        BUG("a column after a cell");
+    t->heading = mem_grow(t->heading, t->columns + 1, sizeof *t->heading);
+    t->number = mem_grow(t->number, t->columns + 1, sizeof *t->number);
     t->heading[t->columns] = mem_text(heading);
     t->number[t->columns++] = number;
 }
@@ -108,12 +110,13 @@ static void text_row(struct text *out, const struct table *t, char *const *cell,
 
 void table_text(struct text *out, const struct table *t)
 {
-    size_t width[TABLE_COLUMNS_MAX];
+    size_t *width = mem_new(t->columns, sizeof *width);
     for (size_t c = 0; c < t->columns; c++)
         width[c] = column_width(t, c);
     text_row(out, t, t->heading, width);
     for (size_t i = 0; i < t->cells; i += t->columns)
         text_row(out, t, t->cell + i, width);
+    mem_free(width);
 }
 
 /* ---- page ---- */

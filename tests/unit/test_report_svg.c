@@ -8,6 +8,7 @@
 #include "report/chart.h"
 #include "report/figures.h"
 #include "report/svg.h"
+#include "report/table.h"
 #include "unit.h"
 
 static void axes_have_round_ends(void)
@@ -147,6 +148,23 @@ static void digits_follow_the_error(void)
     CU_ASSERT_EQUAL(digits_for(NAN, 1, 2).decimals, 2);
 }
 
+/* A design may name any number of targets, a column each. */
+static void tables_have_any_number_of_columns(void)
+{
+    struct table *t = table_new();
+    struct text text = TEXT_INIT;
+    for (size_t c = 0; c < 200; c++)
+        table_column(t, c ? "col" : "row", c > 0);
+    for (size_t c = 0; c < 400; c++)
+        table_cell(t, c % 200 ? "1" : "name");
+    CU_ASSERT_EQUAL(table_rows(t), 2);
+    table_text(&text, t);
+    CU_ASSERT_EQUAL(markup_count(text_s(&text), "col"), 199);
+    CU_ASSERT_EQUAL(markup_count(text_s(&text), "\n"), 3);
+    table_free(t);
+    text_release(&text);
+}
+
 static const struct unit_test tests[] = {
     {"axes have round ends", axes_have_round_ends},
     {"levels stand to scale where labels fit", levels_stand_to_scale_where_labels_fit},
@@ -155,6 +173,7 @@ static const struct unit_test tests[] = {
     {"text is escaped, numbers are short", text_is_escaped_and_numbers_are_short},
     {"lines break at blanks", lines_break_at_blanks},
     {"probabilities are never exactly 0 or 1", probabilities_are_never_exactly_0_or_1},
+    {"tables have any number of columns", tables_have_any_number_of_columns},
     {"digits follow the error", digits_follow_the_error},
     UNIT_END};
 
