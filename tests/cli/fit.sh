@@ -83,7 +83,7 @@ header_faults() {
 levels_that_do_not_suit() { printf 'level,response\n-1,2\n2,3\n3,4\n' >neg.csv; run fit neg.csv --curve emax -o ld; ended 2 && err_has "below 0" && absent ld; }
 rows_without_response() { printf 'level,response\n0,1\n0,2\n1,\n1,3\n2,4\n' >gaps.csv; run fit gaps.csv --curve linear --json -o rw; ended 0 && out_has '"left_out": 1' && out_has '"subjects": 4'; }
 binary_rows() { printf 'level,response\n0,0\n0,1\n0,0\n1,1\n1,0\n1,1\n2,1\n2,1\n2,0\n' >bin.csv; run fit bin.csv --curve linear --endpoint binary --json -o br; ended 0 && out_has '"endpoint": "binary"' && out_has '"events": 1'; }
-no_maximum() { printf 'level,n,mean,sd\n0,20,0,1\n10,20,1,1\n20,20,2,1\n30,20,3.2,1\n' >st.csv; run fit st.csv --curve emax -o nm; ended 0 && out_has "There are no likelihood estimates: ED50 runs off" && grep -q '"converged": false' nm/fit.json; }
+no_maximum() { printf 'level,n,mean,sd\n0,20,0,1\n10,20,1,1\n20,20,2,1\n30,20,3.2,1\n' >st.csv; run fit st.csv --curve emax -o nm; ended 0 && out_has "There are no likelihood estimates. ED50 runs off" && grep -q '"converged": false' nm/fit.json; }
 stdout_full() { "$TERRACE" fit "$rats" --curve linear -o sf >/dev/full 2>err; status=$?; ended 4 && absent sf; }
 
 try "Rat42, certified" rat42
