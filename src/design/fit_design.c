@@ -147,6 +147,10 @@ enum status fit_design(struct design **out, const struct fit_table *t, const str
         (void)design_parse_scaled(out, text_s(&bytes), bytes.length, "fit", v,
                                   t->binary ? NULL : &scales, &own);
     }
+    if (*out) { /* a table of a fit does not say what its levels are */
+        mem_free((*out)->quantity);
+        (*out)->quantity = mem_text("level");
+    }
     for (size_t i = 0; i < own.count; i++)
         tell(e, &own.faults[i], t, q);
     if (*out && of_model.status != STATUS_OK) {

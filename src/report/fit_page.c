@@ -27,12 +27,10 @@ static void what_was_fitted(struct text *out, const struct fit_report *f)
 {
     struct text t = TEXT_INIT;
     page_section_open(out, "fitted", "What was fitted");
-    words_model(&t, &f->r);
-    text_add(&t, " ");
+    text_addf(&t, "The %s at level d is modelled as %s. ",
+              f->table->binary ? "logit of the rate" : "mean response",
+              model_formula(&f->r.d->model));
     words_fit_priors(&t, f);
-    page_paragraph(out, NULL, text_s(&t));
-    text_clear(&t);
-    words_likelihood(&t, f->r.a);
     page_paragraph(out, NULL, text_s(&t));
     text_clear(&t);
     words_lack_of_fit(&t, f->r.a);

@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* fit_text.c: a fit for the terminal, and the sentences that it shares with the page. */
+#include "base/number.h"
 #include "report/analysis_tables.h"
 #include "report/analysis_words.h"
-#include "report/check_words.h"
 #include "report/figures.h"
 #include "report/fit_report.h"
 #include "report/fit_words.h"
@@ -21,6 +21,12 @@ void words_fit_data(struct text *out, const struct fit_report *f)
     }
 }
 
+static void add_rounded(struct text *out, double x)
+{
+    char s[NUMBER_CHARS];
+    text_add(out, number_significant(s, x, 5));
+}
+
 void words_fit_priors(struct text *out, const struct fit_report *f)
 {
     const struct design *d = f->r.d;
@@ -31,9 +37,9 @@ void words_fit_priors(struct text *out, const struct fit_report *f)
     }
     text_add(out, "Priors that were not given are made from these data (only a fit does so): "
                   "centre C = ");
-    add_shortest_number(out, d->scales.C);
+    add_rounded(out, d->scales.C);
     text_add(out, ", the mean of the level means, and scale A = ");
-    add_shortest_number(out, d->scales.A);
+    add_rounded(out, d->scales.A);
     text_add(out, ", the larger of half their range and the pooled SD.");
 }
 
