@@ -33,7 +33,7 @@ struct command {
 };
 
 extern const struct command *const commands[]; /* NULL-terminated, in the order of the help */
-extern const struct command command_check, command_analyze, command_fit;
+extern const struct command command_check, command_analyze, command_fit, command_selfcheck;
 
 const struct command *command_find(const char *name);
 

@@ -13,7 +13,6 @@
 LATER(command_simulate, "simulate", "operating characteristics over the scenarios");
 LATER(command_gather, "gather", "one result from the parts of a run");
 LATER(command_replay, "replay", "one simulated trial, analysis by analysis");
-LATER(command_selfcheck, "selfcheck", "run the built-in published checks");
 LATER(command_compare, "compare", "several designs side by side");
 LATER(command_calibrate, "calibrate", "thresholds that keep an error rate");
 LATER(command_tune, "tune", "design constants by search");

@@ -16,7 +16,7 @@ near_option() { run check --shcema; ended 2 && err_has "did you mean --schema?" 
 unknown_and_help() { run check --help --bogus-thing; ended 2 && out_empty; }
 later_commands() {
     local name
-    for name in simulate gather replay selfcheck compare calibrate tune document seal verify randomize; do
+    for name in simulate gather replay compare calibrate tune document seal verify randomize; do
         run "$name" "$files/trial.json"
         ended 2 && err_has "does not have '$name' yet" && err_lines 1 && out_empty || return 1
     done
