@@ -118,7 +118,7 @@ usual <- list(
     b1 = list(prior("normal", 0, 6), prior("normal", 0, 3)),
     b2 = list(prior("normal", 0, 6), prior("normal", 0, 3)),
     rise = list(prior("normal", 0, 3), prior("normal", 0, 1.5)),
-    scale = list(prior("lognormal", 1.8, 0.5), prior("lognormal", 1.8, 0.5)),
+    scale = list(prior("lognormal", 1.8, 0.35), prior("lognormal", 1.8, 0.35)),
     Emax = list(prior("normal", 0, 6), prior("normal", 0, 3)),
     ED50 = list(prior("lognormal", 0.7, 0.7), prior("lognormal", 0.7, 0.7)),
     h = list(prior("lognormal", 0.5, 0.4), prior("lognormal", 0.5, 0.4)),
@@ -151,7 +151,8 @@ usual_case <- function(curve, endpoint, note = "", ..., order = 1, off = FALSE, 
     }
     if (curve == "logistic" && is.null(priors$ED50)) all$ED50 <- prior("normal", 3, 2)
     truth <- truths[[curve]][[if (endpoint == "continuous") 1 else 2]]
-    name <- paste0(curve, if (curve == "ndlm") paste(" order", order), if (note != "") ", ", note, ", ", endpoint)
+    name <- paste0(curve, if (curve == "ndlm") paste(" order", order), if (note != "") ", ", note, ", ",
+                   endpoint)
     new_case(name, curve, endpoint, truth, all, order = order, off = off, ...)
 }
 
@@ -176,14 +177,17 @@ other_priors <- function() list(
         E0 = prior("student_t", 4, 0, 0.7), b1 = prior("uniform", 0, 5),
         b2 = prior("normal", -1, 2, below = -1.5))),
     usual_case("emax", "continuous", "gamma, Student t, lognormal sd", priors = list(
-        Emax = prior("student_t", 5, 4, 2), ED50 = prior("gamma", 3, 1.5), sd = prior("lognormal", 0.5, 0.3))),
+        Emax = prior("student_t", 5, 4, 2), ED50 = prior("gamma", 3, 1.5),
+        sd = prior("lognormal", 0.5, 0.3))),
     usual_case("sigmoid_emax", "binary", "cut normals, cut gamma", priors = list(
         Emax = prior("normal", 2, 2, above = 0, below = 5), ED50 = prior("normal", 3, 2, above = 0),
         h = prior("gamma", 4, 2, below = 5))),
     usual_case("logistic", "continuous", "uniform, half normal, gamma variance", priors = list(
-        ED50 = prior("uniform", 0, 7), spread = prior("half_normal", 1.5, above = 0.25), variance = prior("gamma", 8, 2))),
+        ED50 = prior("uniform", 0, 7), spread = prior("half_normal", 1.5, above = 0.25),
+        variance = prior("gamma", 8, 2))),
     usual_case("ndlm", "continuous", "inverse gamma drift variance, uniform, gamma sd", priors = list(
-        theta = prior("uniform", -3, 3), drift_variance = prior("inverse_gamma", 4, 5), sd = prior("gamma", 6, 3))),
+        theta = prior("uniform", -3, 3), drift_variance = prior("inverse_gamma", 4, 5),
+        sd = prior("gamma", 6, 3))),
     usual_case("ndlm", "binary", "Student t, gamma drift", order = 2, priors = list(
         theta = prior("student_t", 5, -1, 0.6), slope = prior("normal", 0, 1, above = 0.2),
         drift_sd = prior("gamma", 2, 3))),
@@ -198,7 +202,8 @@ all_cases <- function() c(every_curve("continuous"), every_curve("binary"), othe
 design_text <- function(case) {
     labels <- labels_of(case)
     levels <- paste(sprintf('{"label": "%s", "value": %.15g}', labels, case$d), collapse = ", ")
-    priors <- paste(sprintf('"%s": %s', names(case$priors), vapply(case$priors, prior_json, "")), collapse = ", ")
+    priors <- paste(sprintf('"%s": %s', names(case$priors), vapply(case$priors, prior_json, "")),
+                    collapse = ", ")
     extra <- c(if (case$curve == "log_linear") sprintf(', "shift": %.15g', case$shift),
                if (case$curve == "ndlm") sprintf(', "order": %d', case$order),
                if (case$spacing == "actual") ', "spacing": "actual"')

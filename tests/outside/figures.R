@@ -89,9 +89,11 @@ examine <- function(s) {
     worst_rhat <- if (s$per_chain == 1) 1 else max(each(split_rhat))
     s$why <-
         if (!all(is.finite(s$draws))) "a draw is not finite"
-        else if (min(ess) < LEAST_ESS) sprintf("only %.0f effective draws of %s", min(ess), names(which.min(ess)))
+        else if (min(ess) < LEAST_ESS)
+            sprintf("only %.0f effective draws of %s", min(ess), names(which.min(ess)))
         else if (worst_rhat > MOST_RHAT) sprintf("R-hat %.3f", worst_rhat)
-        else if (worst_halves > MOST_HALVES) sprintf("halves of the chains differ by %.1f standard errors", worst_halves)
+        else if (worst_halves > MOST_HALVES)
+            sprintf("halves of the chains differ by %.1f standard errors", worst_halves)
         else if (worst_link > MOST_LINK) sprintf("batches are correlated (%.2f)", worst_link)
     s
 }

@@ -11,13 +11,17 @@ jags_missing <- function() {
     if (nzchar(Sys.which("jags"))) NULL else "the command jags is not installed (Debian: jags)"
 }
 
-jags_version <- function() sub("^Welcome to (JAGS [0-9.]+).*", "\\1", grep("^Welcome", system2("jags", input = "exit", stdout = TRUE), value = TRUE)[1])
+jags_version <- function() {
+    said <- system2("jags", input = "exit", stdout = TRUE)
+    sub("^Welcome to (JAGS [0-9.]+).*", "\\1", grep("^Welcome", said, value = TRUE)[1])
+}
 
-# Means by level and the sum of squares within levels are independent, normal and sigma^2 chi-square, and
-# say all that normal data say (Fisher 1925).
+# Means by level (normal) and the sum of squares within levels (sd^2 times a chi-square) are independent
+# and say all that normal data say. JAGS is given these.
 normal_sums <- function(case) {
     average <- as.vector(tapply(case$y, case$level, mean))
-    list(average = average, within = sum((case$y - average[case$level])^2), freedom = length(case$y) - length(average))
+    list(average = average, within = sum((case$y - average[case$level])^2),
+         freedom = length(case$y) - length(average))
 }
 
 # Statements of the mean at level k; d, top, shift, gap are data.
@@ -49,7 +53,8 @@ jags_priors <- function(case, first) {
     statements <- lapply(names(case$priors), function(name) {
         p <- case$priors[[name]]
         if (case$curve == "independent" && name == "theta")
-            return(c(sprintf("for (k in 1:%d) {", length(case$d) - first + 1), prior_jags(p, "thetas[k]"), "}"))
+            return(c(sprintf("for (k in 1:%d) {", length(case$d) - first + 1), prior_jags(p, "thetas[k]"),
+                     "}"))
         prior_jags(p, name)
     })
     c(unlist(statements),
@@ -111,10 +116,15 @@ run_jags <- function(case, dir) {
     writeLines(jags_model(case), file.path(dir, "model.bug"))
     write_dump(jags_data(case), file.path(dir, "data.R"))
     for (i in seq_len(JAGS_CHAINS))
-        write_dump(list(.RNG.name = "base::Mersenne-Twister", .RNG.seed = i), file.path(dir, sprintf("start%d.R", i)))
+        write_dump(list(.RNG.name = "base::Mersenne-Twister", .RNG.seed = i),
+                   file.path(dir, sprintf("start%d.R", i)))
     writeLines(jags_script(case), file.path(dir, "script"))
     said <- system2("sh", c("-c", shQuote(sprintf("cd %s && jags script 2>&1", shQuote(dir)))), stdout = TRUE)
     if (!file.exists(file.path(dir, "codachain1.txt"))) stop("JAGS: ", paste(tail(said, 5), collapse = " "))
+    read_coda(case, dir)
+}
+
+read_coda <- function(case, dir) {
     watched <- jags_watched(case)
     index <- read.table(file.path(dir, "codaindex.txt"), stringsAsFactors = FALSE)
     rows <- lapply(seq_len(JAGS_CHAINS), function(i) {

@@ -16,7 +16,10 @@ read_options <- function(words) {
         words <- words[-c(at, at + 1)]
     }
     bad <- setdiff(words, options$samplers)
-    if (length(bad)) stop("no such sampler: ", bad[1], " (base-r, jags, stan)")
+    if (length(bad)) {
+        say("no such sampler or option: %s (base-r, jags, stan, --only PATTERN)", bad[1])
+        quit(status = 2L)
+    }
     if (length(words)) options$samplers <- words
     options
 }
@@ -24,7 +27,7 @@ read_options <- function(words) {
 # Samplers that are installed: name -> function of a case and a directory. What is missing is said.
 installed <- function(names) {
     samplers <- list()
-    missing <- list(`base-r` = NULL, jags = jags_missing(), stan = if ("stan" %in% names) stan_missing())
+    missing <- list(jags = jags_missing(), stan = if ("stan" %in% names) stan_missing())
     for (name in names) if (!is.null(missing[[name]])) say("skip - %s # %s", name, missing[[name]])
     names <- setdiff(names, names(Filter(Negate(is.null), missing)))
     if ("base-r" %in% names) samplers[["base-r"]] <- run_base_r
@@ -33,27 +36,31 @@ installed <- function(names) {
         model <- compile_stan()
         samplers$stan <- function(case, dir) run_stan(case, dir, model)
     }
-    say("# %s", paste(c(R.version.string, if ("jags" %in% names) jags_version(), if ("stan" %in% names) stan_version()),
-                      collapse = "; "))
+    say("# %s", paste(c(R.version.string, if ("jags" %in% names) jags_version(),
+                        if ("stan" %in% names) stan_version()), collapse = "; "))
     samplers
 }
 
 # --- one case
 
 judge <- function(case, program, sampler, dir) {
-    other <- tryCatch({ s <- sampler(case, dir); if (is.null(s$why)) examine(s) else s }, error = function(e) list(failed = conditionMessage(e)))
+    other <- tryCatch({
+        s <- sampler(case, dir)
+        if (is.null(s$why)) examine(s) else s
+    }, error = function(e) list(failed = conditionMessage(e)))
     if (!is.null(other$failed)) return(list(verdict = "not ok", note = other$failed))
     if (!is.null(other$why)) return(list(verdict = "skip", note = paste("#", other$why)))
     z <- differences(case, program, other)
     worst <- which.max(abs(z))
     good <- all(is.finite(z)) && abs(z[worst]) <= LIMIT
     list(verdict = if (good) "ok" else "not ok", largest = abs(z[[worst]]), figures = length(z),
-         note = sprintf("%d figures, the largest difference %.1f standard errors (%s); at least %.0f effective draws",
+         note = sprintf("%d figures, the largest difference %.1f standard errors (%s), %.0f effective draws",
                         length(z), abs(z[worst]), names(z)[worst], other$least_ess))
 }
 
 line_of <- function(case, name, j, seconds) {
-    sprintf("%s - %s: %s%s%s (%.1f s)", j$verdict, case$name, name, if (j$verdict == "skip") " " else ": ", j$note, seconds)
+    sprintf("%s - %s: %s%s%s (%.1f s)", j$verdict, case$name, name, if (j$verdict == "skip") " " else ": ",
+            j$note, seconds)
 }
 
 run_case <- function(case, samplers) {
@@ -73,17 +80,18 @@ run_case <- function(case, samplers) {
     results
 }
 
-# --- that a difference would be noticed: the outside sampler gets a prior on `name` a quarter wider
+# --- that a difference would be noticed: the outside sampler gets a prior on `name` half as wide again
 
 run_wrong <- function(case, name) {
     wrong <- case
-    wrong$priors[[name]]$arg[2] <- wrong$priors[[name]]$arg[2] * 1.25
+    wrong$priors[[name]]$arg[2] <- wrong$priors[[name]]$arg[2] * 1.5
     dir <- tempfile("case", Sys.getenv("WORK"))
     dir.create(dir)
     on.exit(unlink(dir, recursive = TRUE))
     j <- judge(case, run_program(case, dir), function(ignored, dir) run_base_r(wrong, dir), dir)
     noticed <- j$verdict == "not ok" && !is.null(j$largest)
-    say("%s - a prior of %s a quarter wider is noticed: %s: %s", if (noticed) "ok" else "not ok", name, case$name, j$note)
+    say("%s - a prior of %s half as wide again is noticed: %s: %s", if (noticed) "ok" else "not ok", name,
+        case$name, j$note)
     list(verdict = if (noticed) "ok" else "not ok")
 }
 
@@ -93,8 +101,8 @@ summary_lines <- function(results, samplers) {
         verdict <- vapply(of, `[[`, "", "verdict")
         largest <- max(0, unlist(lapply(of, `[[`, "largest")))
         figures <- sum(unlist(lapply(of, `[[`, "figures")))
-        say("# %s: %d of %d cases agree, %d skipped; %d figures; the largest difference %.1f standard errors", name,
-            sum(verdict == "ok"), length(of), sum(verdict == "skip"), figures, largest)
+        say("# %s: %d of %d cases agree, %d skipped; %d figures; the largest difference %.1f standard errors",
+            name, sum(verdict == "ok"), length(of), sum(verdict == "skip"), figures, largest)
     }
 }
 

@@ -16,7 +16,7 @@ if [ ! -x "$terrace" ]; then
     exit 1
 fi
 if ! command -v Rscript >/dev/null; then
-    echo "skip - base-r, jags, stan # Rscript is not installed (Debian: r-base-core); it also writes the models of the other two"
+    echo "skip - base-r, jags, stan # Rscript is not installed (Debian: r-base-core); it drives all three"
     echo "0 passed, 0 failed"
     exit 0
 fi

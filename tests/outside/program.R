@@ -32,8 +32,9 @@ run_program <- function(case, dir) {
     out <- file.path(dir, "out")
     writeLines(design_text(case), design)
     writeLines(data_text(case), file.path(dir, "data.csv"))
-    status <- system2(Sys.getenv("TERRACE"), c("analyze", design, file.path(dir, "data.csv"), "--final", "--draws",
-                      "--threads", "1", "--quiet", "--out", out), stdout = FALSE, stderr = file.path(dir, "messages"))
+    arguments <- c("analyze", design, file.path(dir, "data.csv"), "--final", "--draws", "--threads", "1",
+                   "--quiet", "--out", out)
+    status <- system2(Sys.getenv("TERRACE"), arguments, stdout = FALSE, stderr = file.path(dir, "messages"))
     if (status != 0)
         return(list(why = paste(c(sprintf("analyze ended with status %d:", status),
                                   readLines(file.path(dir, "messages"))), collapse = " ")))

@@ -7,7 +7,8 @@ STAN_KEPT <- 5000
 MOST_DIVERGENT <- 0.001 # of the transitions
 
 stan_missing <- function() {
-    if (!quietly(requireNamespace("rstan", quietly = TRUE))) return("the R package rstan is not installed (Debian: r-cran-rstan)")
+    if (!quietly(requireNamespace("rstan", quietly = TRUE))) 
+        return("the R package rstan is not installed (Debian: r-cran-rstan)")
     if (!nzchar(Sys.which("g++"))) return("rstan needs the compiler g++")
     NULL
 }
@@ -20,7 +21,7 @@ quietly <- function(expression) {
     suppressWarnings(withCallingHandlers(expression, message = muffle))
 }
 
-# Debian's packages leave Boost where the system has it.
+# Debian keeps Boost where its own packages are.
 compile_stan <- function() {
     if (!nzchar(system.file("include", package = "BH")) && dir.exists("/usr/include/boost"))
         rstan::rstan_options(boost_lib = "/usr/include")
@@ -40,35 +41,41 @@ stan_data <- function(case) {
     binary <- case$endpoint == "binary"
     list(P = P, family = as.array(match(vapply(rows, `[[`, "", "family"), names(families))), arg = arg,
          low = as.array(vapply(rows, prior_low, 0)), high = as.array(vapply(rows, prior_high, 0)),
-         K = K, d = case$d, curve = match(case$curve, names(stan_curves)), order = case$order,
-         gap = c(rep(1, K - length(on) + 1), step_scale(on, case)^2), shift = case$shift, off = as.integer(case$off),
-         control_at = at("control"), sd_at = at(c("sd", "variance")), sd_is_variance = as.integer(at("variance") > 0),
-         drift_at = at(c("drift_sd", "drift_variance")), drift_is_variance = as.integer(at("drift_variance") > 0),
+         K = K, d = case$d, curve = match(case$curve, stan_curves), order = case$order,
+         gap = c(rep(1, K - length(on) + 1), step_scale(on, case)^2), shift = case$shift,
+         off = as.integer(case$off), control_at = at("control"), sd_at = at(c("sd", "variance")),
+         sd_is_variance = as.integer(at("variance") > 0), drift_at = at(c("drift_sd", "drift_variance")),
+         drift_is_variance = as.integer(at("drift_variance") > 0),
          Z = length(step_names(case)), binary = as.integer(binary), N = if (binary) 0L else length(case$y),
          y = if (binary) numeric(0) else case$y, level = if (binary) integer(0) else case$level,
          events = if (binary) case$events else rep(0L, K), n = case$n, rows = names(rows))
 }
 
-stan_curves <- c(linear = 1, log_linear = 2, quadratic = 3, exponential = 4, emax = 5, sigmoid_emax = 6,
-                 logistic = 7, ndlm = 8, independent = 9)
+# Their numbers in model.stan.
+stan_curves <- c("linear", "log_linear", "quadratic", "exponential", "emax", "sigmoid_emax", "logistic", "ndlm",
+                 "independent")
 
 run_stan <- function(case, dir, model) {
     data <- stan_data(case)
-    names_of <- data$rows
-    data$rows <- NULL
-    fit <- quietly(rstan::sampling(model, data, chains = STAN_CHAINS, warmup = STAN_BURN, iter = STAN_BURN + STAN_KEPT,
-                           seed = 1, cores = 1, refresh = 0, pars = c("x", "mu"), init_r = 1,
-                           control = list(adapt_delta = 0.99), save_warmup = FALSE))
-    if (rstan::get_num_divergent(fit) > MOST_DIVERGENT * STAN_CHAINS * STAN_KEPT)
-        return(list(why = sprintf("%d divergent transitions", rstan::get_num_divergent(fit))))
+    fit <- quietly(rstan::sampling(model, data[names(data) != "rows"], chains = STAN_CHAINS, warmup = STAN_BURN,
+                                   iter = STAN_BURN + STAN_KEPT, seed = 1, cores = 1, refresh = 0,
+                                   pars = c("x", "mu"), init_r = 1, control = list(adapt_delta = 0.99),
+                                   save_warmup = FALSE))
+    divergent <- rstan::get_num_divergent(fit)
+    if (divergent > MOST_DIVERGENT * STAN_CHAINS * STAN_KEPT)
+        return(list(why = sprintf("%d divergent transitions", divergent)))
+    sample_of(stan_draws(case, fit, data$rows), rep(seq_len(STAN_CHAINS), each = STAN_KEPT), 64)
+}
+
+# Columns as the program names them, and the responses.
+stan_draws <- function(case, fit, rows) {
     v <- rstan::extract(fit, pars = c("x", "mu"), permuted = FALSE)
     draws <- matrix(v, ncol = dim(v)[3], dimnames = list(NULL, dimnames(v)[[3]]))
     x <- draws[, grepl("^x\\[", colnames(draws)), drop = FALSE]
     m <- draws[, grepl("^mu\\[", colnames(draws)), drop = FALSE]
     if (case$endpoint == "binary") m <- plogis(m)
-    colnames(x) <- ifelse(names_of == "theta1", "theta", sub("variance", "sd", names_of))
     colnames(m) <- response_name(labels_of(case))
-    for (name in grep("variance", names_of)) x[, name] <- sqrt(x[, name])
-    x <- x[, colnames(x) %in% sub("variance", "sd", names(case$priors)), drop = FALSE]
-    sample_of(cbind(x, m), rep(seq_len(STAN_CHAINS), each = STAN_KEPT), 64)
+    for (i in grep("variance", rows)) x[, i] <- sqrt(x[, i])
+    colnames(x) <- ifelse(rows == "theta1", "theta", sub("variance", "sd", rows))
+    cbind(x[, colnames(x) %in% sub("variance", "sd", names(case$priors)), drop = FALSE], m)
 }
