@@ -184,18 +184,17 @@ void selfcheck_page(struct text *out, const struct selfcheck *s)
     masthead(out, s);
     for (size_t i = 0; i < s->count; i++) {
         const struct check_result *r = &s->result[i];
-        struct text caption = TEXT_INIT;
         if (strcmp(group, r->check->group) != 0) {
             if (*group)
                 page_section_close(out);
             group = r->check->group;
             page_section_open(out, r->check->key, group);
         }
-        text_addf(&caption, "%s: %s. %s", r->check->key, r->passed ? "passed" : "FAILED",
-                  r->check->what);
-        page_paragraph(out, NULL, r->check->source);
-        page_table(out, table_of(r), text_s(&caption));
-        text_release(&caption);
+        text_add(out, "<h3>");
+        text_add_html(out, r->check->key);
+        text_addf(out, ": %s</h3>\n", r->passed ? "passed" : "FAILED");
+        page_paragraph(out, NULL, r->check->what);
+        page_table(out, table_of(r), r->check->source);
     }
     page_section_close(out);
     text_add(out, "</main>\n");

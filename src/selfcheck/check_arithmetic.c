@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* check_arithmetic.c: random bits, digests and special functions against published values. */
 #include <math.h>
+#include <stdio.h>
 #include <string.h>
 
 #include "base/base.h"
@@ -11,6 +12,13 @@
 #include "selfcheck/check_list.h"
 
 /* ---- Philox ---- */
+
+enum { WORDS = 40 };
+
+static void hex_words(char out[WORDS], const uint32_t x[4])
+{
+    snprintf(out, WORDS, "%08x %08x %08x %08x", x[0], x[1], x[2], x[3]);
+}
 
 static void run_philox(struct check_result *r, double nudge)
 {
@@ -30,8 +38,11 @@ static void run_philox(struct check_result *r, double nudge)
         memcpy(counter, known[i].counter, sizeof counter);
         counter[0] ^= nudge != 0 ? 1u : 0u;
         philox4x32(out, counter, known[i].key);
-        for (size_t w = 0; w < 4; w++)
-            check_add(r, known[i].bits[w], out[w], 0, "vector %zu, word %zu", i + 1, w + 1);
+        char want[WORDS], got[WORDS], what[WORDS];
+        hex_words(want, known[i].bits);
+        hex_words(got, out);
+        snprintf(what, sizeof what, "vector %zu", i + 1);
+        check_add_text(r, want, got, what);
     }
 }
 
