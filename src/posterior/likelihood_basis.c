@@ -1,7 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* likelihood_basis.c: maximum likelihood of a curve with a basis: from the best place of the search
- * by Gauss-Newton steps in all parameters to every digit; expected information; words where there
- * is no maximum. */
+/* likelihood_basis.c: maximum likelihood of a curve with a basis, from the best place of the
+ * search: expected information, rows, and words where there is no maximum. */
 #include <gsl/gsl_blas.h>
 #include <math.h>
 #include <string.h>
@@ -12,110 +11,12 @@
 
 /* a shape number within this share of its range from an end has run off */
 #define AT_END 0.005
-enum { ITERATIONS = 200 };
-
-/* ---- Gauss-Newton in all parameters ---- */
-
-/* d theta / d shape by the five-point rule */
-static void shape_derivative(const struct search *s, size_t dim, double *out)
-{
-    static const double at[4] = {-2, -1, 1, 2}, weight[4] = {1, -8, 8, -1};
-    const struct likelihood_model *q = s->q;
-    const size_t j = s->shape_of[dim];
-    double shape[SHAPES_MAX] = {s->shape[0], s->shape[1]}, theta[LEVELS_MAX];
-    const double spread = s->high[dim] - s->low[dim];
-    const double h = 1e-3 * (search_is_log(s, dim) ? s->shape[j] : 0.02 * spread);
-    gsl_matrix *x = gsl_matrix_alloc(q->x.levels, q->linear);
-    for (size_t i = 0; i < q->x.levels; i++)
-        out[i] = 0;
-    for (size_t k = 0; k < 4; k++) {
-        shape[j] = s->shape[j] + at[k] * h;
-        search_columns(q, shape, x);
-        search_theta(s, x, theta);
-        for (size_t i = 0; i < q->x.levels; i++)
-            out[i] += weight[k] * theta[i] / (12 * h);
-    }
-    gsl_matrix_free(x);
-}
-
-/* Jacobian of theta in the free parameters: linear ones, then shapes. */
-static void fill_jacobian(const struct search *s, gsl_matrix *J, double *theta)
-{
-    const size_t levels = s->q->x.levels;
-    double slope[LEVELS_MAX];
-    gsl_matrix *x = gsl_matrix_alloc(levels, s->q->linear);
-    search_columns(s->q, s->shape, x);
-    search_theta(s, x, theta);
-    for (size_t f = 0; f < s->frees; f++)
-        for (size_t i = 0; i < levels; i++)
-            gsl_matrix_set(J, i, f, gsl_matrix_get(x, i, s->free[f]));
-    for (size_t d = 0; d < s->dims; d++) {
-        shape_derivative(s, d, slope);
-        for (size_t i = 0; i < levels; i++)
-            gsl_matrix_set(J, i, s->frees + d, slope[i]);
-    }
-    gsl_matrix_free(x);
-}
-
-static void move(struct search *s, const struct search *from, const double *step, double share)
-{
-    for (size_t f = 0; f < s->frees; f++)
-        s->linear[s->free[f]] = from->linear[s->free[f]] + share * step[f];
-    for (size_t d = 0; d < s->dims; d++) {
-        double *shape = &s->shape[s->shape_of[d]];
-        const double was = from->shape[s->shape_of[d]];
-        *shape = was + share * step[s->frees + d];
-        if (search_is_log(s, d) && !(*shape > 0.1 * was))
-            *shape = 0.1 * was;
-    }
-}
-
-/* Residuals and weights about the present fit: continuous n_k and y - theta, binary the working
- * ones. */
-static void residuals(const struct search *s, const double *theta, double *r, double *w)
-{
-    const struct likelihood_data *x = &s->q->x;
-    double z[LEVELS_MAX];
-    if (x->binary)
-        search_working(x, theta, z, w);
-    for (size_t i = 0; i < x->levels; i++) {
-        r[i] = x->binary ? z[i] - theta[i] : x->y[i] - theta[i];
-        w[i] = x->binary ? w[i] : x->n[i];
-    }
-}
-
-/* true when the last full step was as good as none */
-static bool polish(struct search *s)
-{
-    const size_t p = s->frees + s->dims, levels = s->q->x.levels;
-    gsl_matrix *J = gsl_matrix_alloc(levels, p > 0 ? p : 1);
-    bool settled = p == 0;
-    for (int k = 0; k < ITERATIONS && !settled; k++) {
-        double theta[LEVELS_MAX], r[LEVELS_MAX], w[LEVELS_MAX], step[MEANS_MAX], largest = 0;
-        const struct search before = *s;
-        const double value = search_value(s);
-        fill_jacobian(s, J, theta);
-        residuals(s, theta, r, w);
-        if (!likelihood_solve(J, r, w, step))
-            break;
-        double share = 1;
-        move(s, &before, step, share);
-        while (share > 1e-6 && !(search_value(s) >= value - 1e-14 * fabs(value)))
-            move(s, &before, step, share *= 0.5);
-        for (size_t f = 0; f < p; f++) {
-            const double size = f < s->frees ? fabs(before.linear[s->free[f]])
-                                             : fabs(before.shape[s->shape_of[f - s->frees]]);
-            largest = fmax(largest, fabs(step[f]) / (size + 1e-8));
-        }
-        if (share <= 1e-6)
-            *s = before;
-        settled = largest < 1e-10 || (share <= 1e-6 && largest < 1e-6);
-        if (share <= 1e-6)
-            break;
-    }
-    gsl_matrix_free(J);
-    return settled;
-}
+/* the likelihood must fall by this much, in its logarithm, towards the ends of the range */
+#define GAIN_LEAST 1e-3
+/* standard errors of shape numbers above this many times their size are not reported */
+#define VAGUE 10.0
+/* a logit at a level with data is not determined when its standard error is above this */
+#define LARGEST_SE 100.0
 
 /* ---- results ---- */
 
@@ -125,8 +26,8 @@ static bool information(const struct search *s, gsl_matrix *A)
     const size_t levels = s->q->x.levels, p = A->size1;
     double theta[LEVELS_MAX], r[LEVELS_MAX], w[LEVELS_MAX];
     gsl_matrix *J = gsl_matrix_alloc(levels, p);
-    fill_jacobian(s, J, theta);
-    residuals(s, theta, r, w);
+    search_jacobian(s, J, theta);
+    search_residuals(s, theta, r, w);
     for (size_t i = 0; i < levels; i++)
         for (size_t f = 0; f < p; f++)
             gsl_matrix_set(J, i, f, gsl_matrix_get(J, i, f) * sqrt(w[i]));
@@ -147,7 +48,12 @@ static void put_means(struct likelihood_fit *f, const struct search *s, const gs
         size_t at = 0;
         if (role == ROLE_RESIDUAL)
             continue;
-        row->estimate = role == ROLE_SHAPE ? s->shape[shape++] : s->linear[linear++];
+        if (role == ROLE_SHAPE) {
+            row->estimate = s->shape[shape++];
+        } else {
+            row->estimate = s->linear[linear] + likelihood_shift(q, linear);
+            linear++;
+        }
         if (fixed)
             continue;
         at = role == ROLE_SHAPE ? s->frees + free_shape++ : free_linear++;
@@ -169,12 +75,12 @@ static void put_responses(struct likelihood_fit *f, const struct search *s)
     const struct likelihood_model *q = s->q;
     double value[CURVE_PARAMETERS_MAX], theta[LEVELS_MAX];
     size_t n = 0, place = 0;
-    for (size_t j = 0; q->m->curve->parameters[n].name; n++)
-        value[n] = f->row[n].estimate, (void)j;
+    for (; q->m->curve->parameters[n].name; n++)
+        value[n] = f->row[n].estimate;
     curve_mean(q->m->curve, &q->x.at, value, theta);
     for (size_t k = 0; k < q->d->levels; k++) {
         const bool on = q->d->control_on_curve || (int)k != q->d->control;
-        const double t = on ? theta[place++] : s->linear[q->linear - 1];
+        const double t = on ? theta[place++] : s->linear[q->linear - 1] + q->x.base;
         f->response[k] = q->x.binary ? search_rate(t) : t;
     }
 }
@@ -192,20 +98,117 @@ static const char singular[] =
     "The data do not tell the parameters apart (flat responses, or levels that do not show the "
     "curve's bend): the likelihood has no single maximum.";
 
+/* What a gain of the searched value is in log likelihood, over the value `best`. */
+static double likelihood_gain(const struct search *s, double best, double other)
+{
+    const struct likelihood_model *q = s->q;
+    if (q->x.binary)
+        return best - other;
+    if (!q->sd_free)
+        return (best - other) / (2 * q->sd_fixed * q->sd_fixed);
+    return 0.5 * q->x.total * log((q->x.ss - other) / (q->x.ss - best));
+}
+
+static void put_run_off(struct likelihood_fit *f, const struct search *s, size_t d, bool high)
+{
+    struct text t = TEXT_INIT;
+    text_addf(&t,
+              "%s runs off: the likelihood does not fall as it goes to %s, so the data do not "
+              "determine it.",
+              s->q->shape[s->shape_of[d]]->name,
+              high                  ? "infinity"
+              : search_is_log(s, d) ? "0"
+                                    : "minus infinity");
+    likelihood_fails(f, text_s(&t));
+    text_release(&t);
+}
+
+/* The maximum lies at an end of the searched range, or an end is as good. */
 static bool runs_off(const struct search *s, struct likelihood_fit *f)
 {
+    size_t dim = 0;
+    bool high = false;
     for (size_t d = 0; d < s->dims; d++) {
         const double x = s->shape[s->shape_of[d]], c = search_is_log(s, d) ? log(x) : x;
         const double room = AT_END * (s->high[d] - s->low[d]);
         if (c > s->low[d] + room && c < s->high[d] - room)
             continue;
+        put_run_off(f, s, d, c > s->low[d] + room);
+        return true;
+    }
+    if (s->dims == 0)
+        return false;
+    const double end = search_best_end(s, &dim, &high);
+    if (likelihood_gain(s, search_value(s), end) > GAIN_LEAST)
+        return false;
+    put_run_off(f, s, dim, high);
+    return true;
+}
+
+/* Largest standard error of a logit at a level with data, by the covariance V of the parameters. */
+static double largest_logit_se(const struct search *s, const gsl_matrix *V)
+{
+    const size_t levels = s->q->x.levels, p = V->size1;
+    double theta[LEVELS_MAX], largest = 0;
+    gsl_matrix *J = gsl_matrix_alloc(levels, p);
+    search_jacobian(s, J, theta);
+    for (size_t i = 0; i < levels; i++) {
+        double sum = 0;
+        for (size_t f = 0; f < p; f++)
+            for (size_t g = 0; g < p; g++)
+                sum += gsl_matrix_get(J, i, f) * gsl_matrix_get(V, f, g) * gsl_matrix_get(J, i, g);
+        largest = fmax(largest, sqrt(sum));
+    }
+    gsl_matrix_free(J);
+    return largest;
+}
+
+/* Some logit runs off to infinity. Where the information is singular, a logit this far out tells.
+ */
+static bool is_separated(const struct search *s, bool inverted, const gsl_matrix *V)
+{
+    double theta[LEVELS_MAX];
+    if (!s->q->x.binary || s->frees + s->dims == 0)
+        return false;
+    if (inverted)
+        return !(largest_logit_se(s, V) < LARGEST_SE);
+    gsl_matrix *x = gsl_matrix_alloc(s->q->x.levels, s->q->linear);
+    bool far = false;
+    search_columns(s->q, s->shape, x);
+    search_theta(s, x, theta);
+    for (size_t i = 0; i < s->q->x.levels; i++)
+        far = far || !(fabs(theta[i]) < 12);
+    gsl_matrix_free(x);
+    return far;
+}
+
+/* Variance of one response on n - p degrees, or the known one; binary: 1. */
+static double fit_variance(const struct search *s)
+{
+    const struct likelihood_model *q = s->q;
+    if (q->x.binary)
+        return 1;
+    if (!q->sd_free)
+        return q->sd_fixed * q->sd_fixed;
+    return (q->x.ss - search_value(s)) / (q->x.total - (double)(s->frees + s->dims));
+}
+
+/* A shape number whose standard error dwarfs it (or the levels' range) is no estimate. */
+static bool is_vague(const struct search *s, const gsl_matrix *V, struct likelihood_fit *f)
+{
+    const struct curve_levels *at = &s->q->x.at;
+    const double variance = fit_variance(s), range = at->value[at->count - 1] - at->value[0];
+    for (size_t d = 0; d < s->dims; d++) {
+        const double se = sqrt(variance * gsl_matrix_get(V, s->frees + d, s->frees + d));
+        const double size = search_is_log(s, d) ? s->shape[s->shape_of[d]] : range;
+        if (se < VAGUE * size)
+            continue;
         struct text t = TEXT_INIT;
-        text_addf(&t,
-                  "%s runs off: the likelihood keeps rising as it goes to %s, so the data do not "
-                  "determine it.",
-                  s->q->shape[s->shape_of[d]]->name,
-                  c <= s->low[d] + room ? (search_is_log(s, d) ? "0" : "minus infinity")
-                                        : "infinity");
+        text_addf(
+            &t,
+            "The data do not determine %s: its standard error would be more than %.0f times %s.",
+            s->q->shape[s->shape_of[d]]->name, VAGUE,
+            search_is_log(s, d) ? "its estimate" : "the range of the levels");
         likelihood_fails(f, text_s(&t));
         text_release(&t);
         return true;
@@ -213,25 +216,12 @@ static bool runs_off(const struct search *s, struct likelihood_fit *f)
     return false;
 }
 
-static bool is_separated(const struct search *s)
-{
-    double theta[LEVELS_MAX];
-    gsl_matrix *x = gsl_matrix_alloc(s->q->x.levels, s->q->linear);
-    bool all = s->q->x.binary && s->frees > 0;
-    search_columns(s->q, s->shape, x);
-    search_theta(s, x, theta);
-    for (size_t i = 0; i < s->q->x.levels; i++) /* no level says where between 0 and 1 it is */
-        all = all && fabs(theta[i]) > 12;
-    gsl_matrix_free(x);
-    return all;
-}
-
 static void finish_continuous(struct likelihood_fit *f, const struct search *s, const gsl_matrix *V)
 {
     const struct likelihood_model *q = s->q;
     const size_t p = s->frees + s->dims;
     const double rss = q->x.ss - search_value(s), df = q->x.total - (double)p;
-    const double variance = q->sd_free ? rss / df : q->sd_fixed * q->sd_fixed;
+    const double variance = fit_variance(s);
     put_means(f, s, V, variance);
     put_residual(f, q, sqrt(variance), df);
     f->log_likelihood =
@@ -276,21 +266,22 @@ void likelihood_basis_run(struct likelihood_fit *f, struct likelihood_model *q)
         search_climb(&s);
     else
         (void)search_profile(&s);
-    const bool settled = polish(&s);
+    const bool settled = search_polish(&s);
     const double rss = q->x.binary ? 1 : q->x.ss - search_value(&s);
     double scale = q->x.ss;
     for (size_t i = 0; i < q->x.levels; i++)
         scale += q->x.n[i] * q->x.y[i] * q->x.y[i];
     gsl_matrix *V = gsl_matrix_calloc(p > 0 ? p : 1, p > 0 ? p : 1);
-    if (runs_off(&s, f)) {
-        ;
-    } else if (is_separated(&s)) {
+    const bool inverted = p == 0 || information(&s, V);
+    if (is_separated(&s, inverted, V)) {
         likelihood_fails(f, separated);
     } else if (q->sd_free && !q->x.binary && !(rss > 1e-24 * scale)) {
         likelihood_fails(f, perfect);
-    } else if ((p > 0 && !information(&s, V)) || !settled) {
+    } else if (runs_off(&s, f)) {
+        ;
+    } else if (!inverted || !settled) {
         likelihood_fails(f, singular);
-    } else {
+    } else if (!is_vague(&s, V, f)) {
         f->converged = true;
         if (q->x.binary)
             finish_binary(f, &s, V);
@@ -306,11 +297,11 @@ void likelihood_basis_run(struct likelihood_fit *f, struct likelihood_model *q)
 /* The estimate of a level: its own mean or logit, or the known theta. */
 static double level_estimate(const struct likelihood_model *q, size_t i, bool *known)
 {
-    const struct prior *prior = q->linear_prior[q->x.place[i] < 0 ? q->linear - 1 : 0];
+    const size_t j = q->x.place[i] < 0 ? q->linear - 1 : 0;
     const double rate = q->x.events[i] / q->x.n[i];
-    *known = prior_is_fixed(prior);
+    *known = prior_is_fixed(q->linear_prior[j]);
     if (*known)
-        return prior->arg[0];
+        return likelihood_known(q, j);
     return q->x.binary ? log(rate / (1 - rate)) : q->x.y[i];
 }
 
@@ -350,11 +341,11 @@ static void put_free(struct likelihood_fit *f, const struct likelihood_model *q,
         const double t = level_estimate(q, i, &known), rate = search_rate(t);
         const double unit = x->binary ? 1 / (rate * (1 - rate)) : variance;
         const bool control = x->place[i] < 0;
-        f->response[x->level[i]] = x->binary ? rate : t;
+        f->response[x->level[i]] = x->binary ? rate : t + x->base;
         if (x->place[i] > 0)
             continue; /* theta stands for the first level */
         struct likelihood_row *row = likelihood_row(f, control ? "control" : "theta");
-        row->estimate = isfinite(t) ? t : NAN;
+        row->estimate = isfinite(t) ? t + x->base : NAN;
         row->se = isfinite(t) && !known ? sqrt(unit / x->n[i]) : NAN;
     }
 }

@@ -3,7 +3,6 @@
 #include "posterior/likelihood_fit.h"
 
 #include <gsl/gsl_linalg.h>
-#include <gsl/gsl_multifit.h>
 #include <gsl/gsl_sf_gamma.h>
 #include <math.h>
 #include <string.h>
@@ -55,37 +54,52 @@ double likelihood_coefficients(const struct likelihood_data *x)
     return sum;
 }
 
+/* sqrt(w) X with columns of length 1, into a[rows][columns]; scale: their lengths. False where one
+ * has none. */
+static bool scale_columns(const gsl_matrix *X, const double *w, double *a, double *scale)
+{
+    const size_t rows = X->size1, columns = X->size2;
+    for (size_t j = 0; j < columns; j++) {
+        double largest = 0, sum = 0;
+        for (size_t i = 0; i < rows; i++) {
+            a[i * columns + j] = sqrt(w[i]) * gsl_matrix_get(X, i, j);
+            largest = fmax(largest, fabs(a[i * columns + j]));
+        }
+        if (!(largest > 0) || !isfinite(largest))
+            return false;
+        for (size_t i = 0; i < rows; i++)
+            sum += pow(a[i * columns + j] / largest, 2);
+        scale[j] = largest * sqrt(sum);
+        for (size_t i = 0; i < rows; i++)
+            a[i * columns + j] /= scale[j];
+    }
+    return true;
+}
+
 bool likelihood_solve(const gsl_matrix *X, const double *y, const double *w, double *b)
 {
     const size_t rows = X->size1, columns = X->size2;
-    double chi, scale = 0;
-    size_t rank;
+    double a[LEVELS_MAX * MEANS_MAX], v[MEANS_MAX * MEANS_MAX], size[MEANS_MAX], scale[MEANS_MAX];
     if (columns == 0)
         return true;
-    if (rows < columns)
+    if (rows < columns || !scale_columns(X, w, a, scale))
         return false;
-    gsl_matrix *A = gsl_matrix_alloc(rows, columns), *C = gsl_matrix_alloc(columns, columns);
-    gsl_vector *r = gsl_vector_alloc(rows), *c = gsl_vector_alloc(columns);
-    gsl_multifit_linear_workspace *work = gsl_multifit_linear_alloc(rows, columns);
-    for (size_t i = 0; i < rows; i++) {
-        const double root = sqrt(w[i]);
+    gsl_matrix_view A = gsl_matrix_view_array(a, rows, columns);
+    gsl_matrix_view V = gsl_matrix_view_array(v, columns, columns);
+    gsl_vector_view S = gsl_vector_view_array(size, columns);
+    gsl_linalg_SV_decomp_jacobi(&A.matrix, &V.matrix, &S.vector);
+    if (!(size[columns - 1] > SINGULAR * size[0]))
+        return false;
+    for (size_t j = 0; j < columns; j++)
+        b[j] = 0;
+    for (size_t c = 0; c < columns; c++) {
+        double along = 0;
+        for (size_t i = 0; i < rows; i++)
+            along += a[i * columns + c] * sqrt(w[i]) * y[i];
         for (size_t j = 0; j < columns; j++)
-            gsl_matrix_set(A, i, j, root * gsl_matrix_get(X, i, j));
-        gsl_vector_set(r, i, root * y[i]);
-        scale += w[i];
+            b[j] += v[j * columns + c] * along / size[c] / scale[j];
     }
-    const bool done =
-        scale > 0 &&
-        gsl_multifit_linear_tsvd(A, r, SINGULAR, c, C, &chi, &rank, work) == GSL_SUCCESS &&
-        rank == columns;
-    for (size_t j = 0; done && j < columns; j++)
-        b[j] = gsl_vector_get(c, j);
-    gsl_multifit_linear_free(work);
-    gsl_matrix_free(A);
-    gsl_matrix_free(C);
-    gsl_vector_free(r);
-    gsl_vector_free(c);
-    return done;
+    return true;
 }
 
 bool likelihood_invert(gsl_matrix *A)
@@ -116,6 +130,24 @@ bool likelihood_invert(gsl_matrix *A)
 
 /* ---- the model made ready ---- */
 
+static void take_base_off(struct likelihood_data *x)
+{
+    for (size_t i = 0; i < x->levels; i++)
+        x->base += x->n[i] * x->y[i] / x->total;
+    for (size_t i = 0; i < x->levels; i++)
+        x->y[i] -= x->base;
+}
+
+double likelihood_shift(const struct likelihood_model *q, size_t j)
+{
+    return j == 0 || (q->has_control && j == q->linear - 1) ? q->x.base : 0;
+}
+
+double likelihood_known(const struct likelihood_model *q, size_t j)
+{
+    return prior_quantile(q->linear_prior[j], 0.5) - likelihood_shift(q, j);
+}
+
 static void gather_data(struct likelihood_data *x, const struct design *d, const struct model *m,
                         const struct level_data *data)
 {
@@ -138,6 +170,7 @@ static void gather_data(struct likelihood_data *x, const struct design *d, const
         x->on_curve += on ? 1 : 0;
         x->levels++;
     }
+    take_base_off(x);
 }
 
 void likelihood_model_init(struct likelihood_model *q, const struct design *d,
@@ -167,6 +200,12 @@ void likelihood_model_init(struct likelihood_model *q, const struct design *d,
     }
 }
 
+static bool control_lacks_data(const struct likelihood_model *q)
+{
+    return q->has_control && !prior_is_fixed(q->linear_prior[q->linear - 1]) &&
+           q->x.on_curve == q->x.levels;
+}
+
 static void name_rows(struct likelihood_fit *f, const struct model *m)
 {
     for (size_t i = 0; i < m->parameters; i++)
@@ -185,7 +224,9 @@ void likelihood_fit_run(struct likelihood_fit *out, const struct design *d, cons
         out->exists = false;
     } else {
         name_rows(out, m);
-        if (m->curve->kind == CURVE_BASIS)
+        if (control_lacks_data(q))
+            likelihood_fails(out, "The control has no responses, and it is not on the curve.");
+        else if (m->curve->kind == CURVE_BASIS)
             likelihood_basis_run(out, q);
         else if (m->curve->kind == CURVE_WALK)
             likelihood_walk_run(out, q);

@@ -35,7 +35,10 @@ struct likelihood_fit {
 };
 
 /* Standard errors are from the expected (Gauss-Newton) information; a continuous endpoint's
- * residual variance is on n - p degrees of freedom (n: responses), or known where sd is fixed. */
+ * residual variance is on n - p degrees of freedom (n: responses), or known where sd is fixed; sd's
+ * own standard error is sd / sqrt(2 (n - p)). A shape number counts as not determined where the
+ * likelihood does not fall towards an end of a wide range, or its standard error is ten times its
+ * size. */
 void likelihood_fit_run(struct likelihood_fit *out, const struct design *d, const struct model *m,
                         const struct level_data *data);
 void likelihood_fit_release(struct likelihood_fit *f);

@@ -17,6 +17,7 @@ struct likelihood_data {
     size_t level[LEVELS_MAX]; /* level of the design */
     int place[LEVELS_MAX];    /* place on the curve, -1: a control off it */
     double n[LEVELS_MAX], y[LEVELS_MAX], events[LEVELS_MAX];
+    double base;      /* taken off every y, so that large responses lose no digits */
     double total, ss; /* responses; within-level sum of squares */
     struct curve_levels at;
     double value[LEVELS_MAX];
@@ -37,6 +38,11 @@ struct likelihood_model {
 
 void likelihood_model_init(struct likelihood_model *q, const struct design *d,
                            const struct model *m, const struct level_data *data);
+
+/* What the base moves in the j-th linear parameter: levels, not slopes. */
+double likelihood_shift(const struct likelihood_model *q, size_t j);
+/* The value of a fixed linear parameter, less that. */
+double likelihood_known(const struct likelihood_model *q, size_t j);
 
 /* Sets the message and takes every number back. */
 void likelihood_fails(struct likelihood_fit *f, const char *sentence);

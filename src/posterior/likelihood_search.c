@@ -12,9 +12,13 @@
 #include <nlopt.h>
 #include <string.h>
 
+#include "base/mem.h"
+
 /* Shape numbers are sought this far out in their default prior; nodes a dim; starts. */
 #define SEARCH_TAIL 1e-9
-enum { NODES = 25, STARTS = 4, STEPS = 60 };
+enum { NODES = 25, STARTS = 6, STEPS = 60, STEPS_ROUGH = 20 };
+/* nodes between two levels; levels where they are set; nodes of a dim at most */
+enum { PARTS = 3, BETWEEN_MOST = 20, NODES_MOST = NODES + (PARTS - 1) * BETWEEN_MOST };
 
 bool search_is_log(const struct search *s, size_t dim)
 {
@@ -105,6 +109,19 @@ void search_working(const struct likelihood_data *x, const double *theta, double
     }
 }
 
+/* From the empirical logits, half an event added on both sides. */
+static bool start_binary(struct search *s, const gsl_matrix *x)
+{
+    const struct likelihood_data *data = &s->q->x;
+    double z[LEVELS_MAX], w[LEVELS_MAX];
+    for (size_t i = 0; i < data->levels; i++) {
+        const double p = (data->events[i] + 0.5) / (data->n[i] + 1);
+        z[i] = log(p / (1 - p));
+        w[i] = data->n[i] * p * (1 - p);
+    }
+    return solve_free(s, x, z, w);
+}
+
 /* Iterated weighted least squares with halved steps; the profile's value. */
 static double binary_profile(struct search *s, const gsl_matrix *x)
 {
@@ -112,7 +129,7 @@ static double binary_profile(struct search *s, const gsl_matrix *x)
     double theta[LEVELS_MAX], z[LEVELS_MAX], w[LEVELS_MAX], before[COLUMNS_MAX + 1];
     search_theta(s, x, theta);
     double value = binomial_log(data, theta);
-    for (int k = 0; k < STEPS; k++) {
+    for (int k = 0; k < (s->rough ? STEPS_ROUGH : STEPS); k++) {
         memcpy(before, s->linear, sizeof before);
         search_working(data, theta, z, w);
         if (!solve_free(s, x, z, w))
@@ -127,7 +144,7 @@ static double binary_profile(struct search *s, const gsl_matrix *x)
         }
         const double gained = next - value;
         value = next;
-        if (k > 0 && gained < 1e-13 * (1 + fabs(value)))
+        if (gained < (s->rough ? 1e-7 : 1e-13) * (1 + fabs(value)))
             break;
     }
     return value;
@@ -151,9 +168,7 @@ double search_profile(struct search *s)
     double value = -INFINITY;
     search_columns(s->q, s->shape, x);
     if (data->binary) {
-        for (size_t f = 0; f < s->frees; f++)
-            s->linear[s->free[f]] = 0;
-        value = binary_profile(s, x);
+        value = start_binary(s, x) ? binary_profile(s, x) : -INFINITY;
     } else if (solve_free(s, x, data->y, data->n)) {
         value = -between_rss(s, x);
     }
@@ -178,7 +193,18 @@ static double objective(unsigned n, const double *c, double *gradient, void *sea
     return value > -INFINITY ? value : -1e300;
 }
 
-/* How far out a shape number is sought: its default prior's outermost quantiles. */
+/* The largest level over the smallest step between two: how steep a rise can be and still be seen.
+ */
+static double level_ratio(const struct curve_levels *at)
+{
+    double gap = INFINITY;
+    for (size_t k = 1; k < at->count; k++)
+        gap = fmin(gap, at->value[k] - at->value[k - 1]);
+    return fmax(1, fmax(fabs(at->value[0]), fabs(at->value[at->count - 1])) / gap);
+}
+
+/* How far out a shape number is sought: its default prior's outermost quantiles, and further where
+ * levels are close. */
 static void set_range(struct search *s, size_t d)
 {
     const struct likelihood_model *q = s->q;
@@ -188,8 +214,10 @@ static void set_range(struct search *s, size_t d)
     bool scaled;
     const struct prior p = q->m->curve->default_prior(index, &scales, &scaled);
     const double low = prior_quantile(&p, SEARCH_TAIL), high = prior_quantile(&p, 1 - SEARCH_TAIL);
-    s->low[d] = search_is_log(s, d) ? log(low) : low;
-    s->high[d] = search_is_log(s, d) ? log(high) : high;
+    const double *x = q->x.at.value, ratio = level_ratio(&q->x.at);
+    s->low[d] = search_is_log(s, d) ? log(low / sqrt(ratio)) : low - (x[q->x.at.count - 1] - x[0]);
+    s->high[d] =
+        search_is_log(s, d) ? log(high * sqrt(ratio)) : high + (x[q->x.at.count - 1] - x[0]);
 }
 
 void search_init(struct search *s, struct likelihood_model *q)
@@ -205,41 +233,92 @@ void search_init(struct search *s, struct likelihood_model *q)
     }
     for (size_t j = 0; j < q->linear; j++)
         if (prior_is_fixed(q->linear_prior[j]))
-            s->linear[j] = q->linear_prior[j]->arg[0];
+            s->linear[j] = likelihood_known(q, j);
         else
             s->free[s->frees++] = j;
 }
 
-/* Keeps the STARTS best nodes, best first. */
-static void keep(double best[STARTS][SHAPES_MAX], double *value, size_t *found, const double *c,
-                 double v)
+/* Nodes of the scan in increasing order: even ones, and where the shape number may be a place among
+ * the levels, some between each two of them, as a steep rise can hide there. */
+static size_t fill_nodes(const struct search *s, size_t d, double *node)
 {
-    size_t at = *found < STARTS ? (*found)++ : STARTS;
-    while (at > 0 && v > value[at - 1]) {
-        at--;
-        if (at + 1 < STARTS) {
-            value[at + 1] = value[at];
-            memcpy(best[at + 1], best[at], sizeof best[at]);
+    const struct curve_levels *at = &s->q->x.at;
+    const bool log_scale = search_is_log(s, d);
+    const double middle = 0.5 * (s->low[d] + s->high[d]), place = log_scale ? exp(middle) : middle;
+    size_t count = 0;
+    for (size_t i = 0; i < NODES; i++)
+        node[count++] = s->low[d] + (s->high[d] - s->low[d]) * ((double)i + 0.5) / NODES;
+    if (place < at->value[0] || place > at->value[at->count - 1])
+        return count;
+    for (size_t k = 1; k < at->count && k <= BETWEEN_MOST; k++)
+        for (size_t part = 1; part < PARTS; part++) {
+            const double x =
+                at->value[k - 1] + (at->value[k] - at->value[k - 1]) * (double)part / PARTS;
+            const double c = log_scale ? log(x) : x;
+            size_t i = count;
+            if (!(c > s->low[d] && c < s->high[d]))
+                continue;
+            for (; i > 0 && node[i - 1] > c; i--)
+                node[i] = node[i - 1];
+            node[i] = c;
+            count++;
         }
-    }
-    if (at < STARTS) {
-        value[at] = v;
-        memcpy(best[at], c, sizeof best[at]);
-    }
+    return count;
 }
 
-static size_t scan(struct search *s, double best[STARTS][SHAPES_MAX], double *value)
+struct grid {
+    size_t nodes[SHAPES_MAX];
+    double node[SHAPES_MAX][NODES_MOST];
+    double value[NODES_MOST * NODES_MOST]; /* [first * nodes[1] + second] */
+};
+
+static void fill_grid(struct search *s, struct grid *g)
 {
-    const size_t second = s->dims == 2 ? NODES : 1;
-    size_t found = 0;
-    for (size_t i = 0; i < NODES; i++)
-        for (size_t j = 0; j < second; j++) {
-            const size_t node[SHAPES_MAX] = {i, j};
-            double c[SHAPES_MAX] = {0, 0};
-            for (size_t d = 0; d < s->dims; d++)
-                c[d] = s->low[d] + (s->high[d] - s->low[d]) * ((double)node[d] + 0.5) / NODES;
-            keep(best, value, &found, c, objective(0, c, NULL, s));
+    g->nodes[1] = 1;
+    for (size_t d = 0; d < s->dims; d++)
+        g->nodes[d] = fill_nodes(s, d, g->node[d]);
+    s->rough = true;
+    for (size_t i = 0; i < g->nodes[0]; i++)
+        for (size_t j = 0; j < g->nodes[1]; j++) {
+            const double c[SHAPES_MAX] = {g->node[0][i], s->dims > 1 ? g->node[1][j] : 0};
+            g->value[i * g->nodes[1] + j] = objective(0, c, NULL, s);
         }
+    s->rough = false;
+}
+
+/* No neighbour is higher. */
+static bool is_hill(const struct grid *g, size_t i, size_t j)
+{
+    const double value = g->value[i * g->nodes[1] + j];
+    for (size_t a = i > 0 ? i - 1 : 0; a <= i + 1 && a < g->nodes[0]; a++)
+        for (size_t b = j > 0 ? j - 1 : 0; b <= j + 1 && b < g->nodes[1]; b++)
+            if (g->value[a * g->nodes[1] + b] > value)
+                return false;
+    return true;
+}
+
+/* The highest hills of the grid, best first. */
+static size_t scan(struct search *s, double best[STARTS][SHAPES_MAX])
+{
+    struct grid *g = mem_new(1, sizeof *g);
+    double value[STARTS];
+    size_t found = 0;
+    fill_grid(s, g);
+    for (size_t i = 0; i < g->nodes[0]; i++)
+        for (size_t j = 0; j < g->nodes[1]; j++) {
+            const double v = g->value[i * g->nodes[1] + j];
+            if (!is_hill(g, i, j) || (found == STARTS && !(v > value[STARTS - 1])))
+                continue;
+            size_t at = found < STARTS ? found++ : STARTS - 1;
+            for (; at > 0 && v > value[at - 1]; at--) {
+                value[at] = value[at - 1];
+                memcpy(best[at], best[at - 1], sizeof best[at]);
+            }
+            value[at] = v;
+            best[at][0] = g->node[0][i];
+            best[at][1] = s->dims > 1 ? g->node[1][j] : 0;
+        }
+    mem_free(g);
     return found;
 }
 
@@ -267,8 +346,8 @@ static double climb(struct search *s, double *c)
 void search_climb(struct search *s)
 {
     double c[SHAPES_MAX] = {0, 0};
-    double start[STARTS][SHAPES_MAX], value[STARTS], top = -INFINITY;
-    const size_t starts = scan(s, start, value);
+    double start[STARTS][SHAPES_MAX], top = -INFINITY;
+    const size_t starts = scan(s, start);
     for (size_t i = 0; i < starts; i++) {
         const double v = climb(s, start[i]);
         if (v > top) {
@@ -290,4 +369,67 @@ double search_value(const struct search *s)
     const double value = data->binary ? binomial_log(data, theta) : -between_rss(s, x);
     gsl_matrix_free(x);
     return value;
+}
+
+/* ---- the ends of the range ---- */
+
+struct face {
+    struct search *s;
+    size_t dim;
+    double end;
+};
+
+/* The profile with one shape number at an end, over the other. */
+static double face_objective(unsigned n, const double *c, double *gradient, void *face)
+{
+    const struct face *f = face;
+    double all[SHAPES_MAX] = {c[0], c[0]};
+    all[f->dim] = f->end;
+    return objective(n, all, gradient, f->s);
+}
+
+static double best_on_face(struct face *f)
+{
+    const size_t other = 1 - f->dim;
+    double c = 0, best = 0, top = -INFINITY, value;
+    if (f->s->dims == 1)
+        return face_objective(1, &c, NULL, f);
+    const double low = f->s->low[other], high = f->s->high[other], step = (high - low) / NODES;
+    for (size_t i = 0; i <= NODES; i++) {
+        c = low + step * (double)i;
+        value = face_objective(1, &c, NULL, f);
+        if (value > top) {
+            top = value;
+            best = c;
+        }
+    }
+    nlopt_opt opt = nlopt_create(NLOPT_LN_NELDERMEAD, 1);
+    if (!opt)
+        return top;
+    nlopt_set_max_objective(opt, face_objective, f);
+    nlopt_set_lower_bounds(opt, &low);
+    nlopt_set_upper_bounds(opt, &high);
+    nlopt_set_initial_step(opt, &step);
+    nlopt_set_xtol_rel(opt, 1e-6);
+    nlopt_set_maxeval(opt, 60);
+    nlopt_optimize(opt, &best, &value);
+    nlopt_destroy(opt);
+    return fmax(top, value);
+}
+
+double search_best_end(const struct search *s, size_t *dim, bool *high)
+{
+    double top = -INFINITY;
+    for (size_t d = 0; d < s->dims; d++)
+        for (int end = 0; end < 2; end++) {
+            struct search copy = *s;
+            struct face f = {&copy, d, end ? s->high[d] : s->low[d]};
+            const double value = best_on_face(&f);
+            if (value > top) {
+                top = value;
+                *dim = d;
+                *high = end;
+            }
+        }
+    return top;
 }

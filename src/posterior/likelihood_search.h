@@ -11,6 +11,7 @@ struct search {
     double low[SHAPES_MAX], high[SHAPES_MAX];
     double shape[SHAPES_MAX]; /* all of them, natural scale */
     double linear[COLUMNS_MAX + 1];
+    bool rough;                          /* fewer digits will do: the scan */
     size_t free[COLUMNS_MAX + 1], frees; /* linear parameters that are estimated */
 };
 
@@ -33,5 +34,15 @@ double search_profile(struct search *s);
 double search_value(const struct search *s);
 /* Leaves shape numbers and linear part at the best found from all starts. */
 void search_climb(struct search *s);
+/* The best profile with a shape number at an end of its range, and which. s stays as it is. */
+double search_best_end(const struct search *s, size_t *dim, bool *high);
+/* From there to every digit; true where the last full step was as good as none. */
+bool search_polish(struct search *s);
+
+/* Derivatives of theta in the free parameters, linear ones first, then shapes: J[level][parameter];
+ * and theta. */
+void search_jacobian(const struct search *s, gsl_matrix *J, double *theta);
+/* Residuals and weights at theta: continuous y - theta and n, binary the working ones. */
+void search_residuals(const struct search *s, const double *theta, double *r, double *w);
 
 #endif

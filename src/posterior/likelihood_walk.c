@@ -20,6 +20,7 @@
 #define LN_2_PI 1.83787706640934548356
 #define RATIO_LOW (-20.0) /* ln of the ratio, scaled by the mean sample size */
 #define RATIO_HIGH 20.0
+#define FLAT 1e-7 /* a likelihood that varies less over the whole range tells nothing */
 
 enum { FLAT_MAX = 3, SCAN = 60, NEWTON = 8 };
 
@@ -89,7 +90,7 @@ static void walk_init(struct walk *w, struct likelihood_model *q)
             gsl_matrix_set(w->X, i, f, flat_column(q, w->flat[f], q->x.place[i]));
         for (size_t c = 0; c < q->linear; c++)
             if (prior_is_fixed(q->linear_prior[c]))
-                w->offset[i] += q->linear_prior[c]->arg[0] * flat_column(q, c, q->x.place[i]);
+                w->offset[i] += likelihood_known(q, c) * flat_column(q, c, q->x.place[i]);
     }
 }
 
@@ -244,18 +245,20 @@ static double centre_of(const struct walk *w)
     return log((double)x->levels / x->total);
 }
 
-/* The best coordinate; *at_low: the likelihood is as high without any walk. */
-static double maximise(struct walk *w, bool *at_low, bool *at_high)
+/* The best coordinate; *at_low: the likelihood is as high without any walk; *flat: wherever. */
+static double maximise(struct walk *w, bool *at_low, bool *at_high, bool *flat)
 {
     const double centre = centre_of(w), low = centre + RATIO_LOW, high = centre + RATIO_HIGH;
-    double best = low, top = -INFINITY;
+    double best = low, top = -INFINITY, bottom = INFINITY;
     for (int k = 0; k <= SCAN; k++) {
         const double c = low + (high - low) * k / SCAN, value = at_coordinate(w, c).value;
+        bottom = fmin(bottom, value);
         if (value > top) {
             top = value;
             best = c;
         }
     }
+    *flat = top - bottom < FLAT;
     nlopt_opt opt = nlopt_create(NLOPT_LN_SBPLX, 1);
     if (opt) {
         const double step = (high - low) / SCAN;
@@ -340,12 +343,12 @@ static double smoothed(struct walk *w, double drift, int place)
         value += drift * walk_covariance(w->q, place, x->place[i]) * gsl_vector_get(Ve, i);
     for (size_t c = 0, f = 0; c < w->q->linear; c++) {
         const bool is_free = f < w->r && w->flat[f] == c;
-        value += flat_column(w->q, c, place) * (is_free ? w->b[f] : w->q->linear_prior[c]->arg[0]);
+        value += flat_column(w->q, c, place) * (is_free ? w->b[f] : likelihood_known(w->q, c));
         f += is_free ? 1 : 0;
     }
     gsl_vector_free(e);
     gsl_vector_free(Ve);
-    return value;
+    return value + x->base;
 }
 
 static void put_flat(struct likelihood_fit *f, struct walk *w)
@@ -358,11 +361,11 @@ static void put_flat(struct likelihood_fit *f, struct walk *w)
         if (role != ROLE_LINEAR && role != ROLE_CONTROL)
             continue;
         if (free < w->r && w->flat[free] == linear) {
-            row->estimate = w->b[free];
+            row->estimate = w->b[free] + likelihood_shift(q, linear);
             row->se = sqrt(gsl_matrix_get(w->XtWX, free, free));
             free++;
         } else {
-            row->estimate = q->linear_prior[linear]->arg[0];
+            row->estimate = likelihood_known(q, linear) + likelihood_shift(q, linear);
         }
         linear++;
     }
@@ -393,7 +396,8 @@ static void put_results(struct likelihood_fit *f, struct walk *w, const struct v
         const bool on = q->d->control_on_curve || (int)k != q->d->control;
         f->response[k] = smoothed(w, v->drift, on ? place++ : -1);
     }
-    const double estimated = (isfinite(w->drift_fixed) ? 0 : 1) + (q->sd_free ? 1 : 0);
+    const double estimated =
+        (double)w->r + (isfinite(w->drift_fixed) ? 0 : 1) + (q->sd_free ? 1 : 0);
     f->log_likelihood = v->value;
     f->aic = 2 * estimated - 2 * v->value;
     f->converged = true;
@@ -410,7 +414,7 @@ static const char endless[] =
 void likelihood_walk_run(struct likelihood_fit *f, struct likelihood_model *q)
 {
     struct walk w;
-    bool at_low = false, at_high = false;
+    bool at_low = false, at_high = false, flat = false;
     walk_init(&w, q);
     const double unknown = (isfinite(w.drift_fixed) ? 0 : 1) + (q->sd_free ? 1 : 0);
     struct variances v = {NAN, NAN, -INFINITY};
@@ -418,10 +422,12 @@ void likelihood_walk_run(struct likelihood_fit *f, struct likelihood_model *q)
         likelihood_fails(f, too_few);
     } else {
         if (unknown > 0)
-            v = at_coordinate(&w, maximise(&w, &at_low, &at_high));
+            v = at_coordinate(&w, maximise(&w, &at_low, &at_high, &flat));
         else
             v = at_coordinate(&w, 0);
-        if (at_low && q->sd_free && isfinite(w.drift_fixed)) {
+        if (flat) {
+            likelihood_fails(f, too_few);
+        } else if (at_low && q->sd_free && isfinite(w.drift_fixed)) {
             likelihood_fails(f, no_noise);
         } else if (at_low) { /* no walk at all: the estimate is 0 */
             const struct variances none = at_coordinate(&w, -INFINITY);
