@@ -249,8 +249,8 @@ bool likelihood_fit_at(const struct likelihood_fit *f, const struct design *d,
     size_t n = 0;
     if (!f->exists || !f->converged || m->curve->kind != CURVE_BASIS)
         return false;
-    for (const struct parameter *p = m->curve->parameters; p->name; p++)
-        value[n] = f->row[n].estimate, n++;
+    for (; m->curve->parameters[n].name; n++)
+        value[n] = f->row[n].estimate;
     const struct curve_levels all = design_curve_levels(d, m, levels);
     const double pair[2] = {x, all.value[all.count - 1]}; /* a curve may ask for the largest */
     const struct curve_levels at = {.count = 2, .value = pair, .shift = m->shift};
