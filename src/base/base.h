@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* base.h: what every room may rely on: start-up, version, BUG(). */
+/* base.h: what every room may rely on: start-up, version, BUG(), ends by a signal. */
 #ifndef TERRACE_BASE_H
 #define TERRACE_BASE_H
 
@@ -20,5 +20,17 @@
 void base_init(void);
 
 _Noreturn void base_bug(const char *file, int line, const char *what);
+
+/* A process that is told to end (Ctrl-C, a closed pipe, ...) ends at once with status 128 + the
+ * signal's number; between hold and release, where files stand half-written under temporary names,
+ * only at the release, so that they can be taken back. Hold does not nest.
+ *
+ *   base_watch_signals    installs the handler; a file that may not grow is then a failed write
+ *   base_signal_caught    number of the signal that came since the hold, or 0: finish early
+ *   base_release_signals  ends the process if one came */
+void base_watch_signals(void);
+void base_hold_signals(void);
+int base_signal_caught(void);
+void base_release_signals(void);
 
 #endif

@@ -45,6 +45,10 @@ void help_command(struct text *out, const struct command *c);
 enum status arguments_check(const struct options *o, const struct command *c, size_t needed,
                             struct err *e);
 
+/* A standard stream that the caller closed is opened such that using it fails: else the next file
+ * opened would take its number, and tables would be printed into a result. */
+void terminal_open_descriptors(void);
+
 /* The surroundings of this process: terminals, NO_COLOR, --progress, --quiet. */
 struct terminal terminal_look(const struct options *o);
 

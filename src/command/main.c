@@ -132,6 +132,8 @@ static enum status run_command(int argc, char **argv, int place, struct err *e)
 int main(int argc, char **argv)
 {
     base_init();
+    base_watch_signals();
+    terminal_open_descriptors();
     struct err e = ERR_INIT;
     int place = command_place(argc, argv);
     enum status status =

@@ -2,8 +2,6 @@
 /* results.c: where a command's files go, and standard output and files together. */
 #include "command/results.h"
 
-#include <unistd.h>
-
 #include "base/mem.h"
 #include "command/command.h"
 
@@ -24,9 +22,6 @@ enum status results_open(struct outdir **out, const char *path, const struct opt
                          const struct result_files *f, struct err *e)
 {
     bool faulty = e->status != STATUS_OK;
-    if (faulty && access(path, F_OK) != 0) {
-        return e->status; /* nothing will be written: make no directory */
-    }
     enum status status = outdir_open(out, path, f->main_file, f->files, options_has(o, "force"),
                                      f->private_files, e);
     if (faulty) {

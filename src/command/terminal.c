@@ -4,6 +4,7 @@
 #undef _GNU_SOURCE
 #define _GNU_SOURCE
 #include <errno.h>
+#include <fcntl.h>
 #include <sched.h>
 #include <stdio.h>
 #include <stdlib.h>
@@ -25,6 +26,16 @@ static bool terminal_colours(int descriptor)
     bool dumb = !kind || (kind[0] == 'd' && kind[1] == 'u' && kind[2] == 'm' && kind[3] == 'b' &&
                           kind[4] == '\0');
     return isatty(descriptor) && !dumb && !no_color();
+}
+
+void terminal_open_descriptors(void)
+{
+    for (int fd = STDIN_FILENO; fd <= STDERR_FILENO; fd++) {
+        if (fcntl(fd, F_GETFD) == -1 && errno == EBADF &&
+            open("/dev/null", fd == STDIN_FILENO ? O_WRONLY : O_RDONLY) < 0) {
+            return; /* no /dev/null: as it was */
+        }
+    }
 }
 
 struct terminal terminal_look(const struct options *o)

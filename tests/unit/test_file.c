@@ -6,6 +6,7 @@
 #include <dirent.h>
 #include <errno.h>
 #include <fcntl.h>
+#include <signal.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
@@ -188,25 +189,23 @@ static bool fails_at(unsigned long n, bool older)
         CU_ASSERT_PTR_NOT_NULL(strstr(e.faults[0].message, strerror(ENOSPC)));
         CU_ASSERT_FALSE(holds(path, "main.json", "new"));
         CU_ASSERT_FALSE(holds(path, "page.html", "new"));
-        if (present(path, "main.json")) /* then all of it is there */
-            CU_ASSERT(holds(path, "main.json", "old") && holds(path, "page.html", "old") &&
-                      holds(path, "draws.csv", "old"));
-        if (older && n <= 5) /* two files of two steps each, then the commit's first */
-            CU_ASSERT(present(path, "main.json"));
+        for (size_t i = 0; owned[i] != NULL; i++)
+            CU_ASSERT(older ? holds(path, owned[i], "old") : !present(path, owned[i]));
     }
     remove_directory(path);
     err_release(&e);
     return status != STATUS_OK;
 }
 
-/* two writes, two fsyncs, the start of the commit, two renames, the directory's fsync */
+/* two writes, two fsyncs, the start of the commit, three older files put aside, two renames, the
+ * directory's fsync */
 static void every_step_fails_once(void)
 {
     for (int older = 0; older <= 1; older++) {
         unsigned long failed = 0;
         for (unsigned long n = 1; n <= STEPS; n++)
             failed += fails_at(n, older != 0);
-        CU_ASSERT_EQUAL(failed, 8);
+        CU_ASSERT_EQUAL(failed, 11);
     }
 }
 
@@ -217,7 +216,7 @@ static void abandoned(void)
     struct err e = ERR_INIT;
     make_directory(path);
     path_of(inner, path, "made");
-    path_of(slash, path, "made/");
+    path_of(slash, path, "made/inner//");
     for (size_t i = 0; i < COUNT_OF(names); i++) {
         struct outdir *d = NULL;
         struct text bytes = TEXT_INIT;
@@ -234,25 +233,38 @@ static void abandoned(void)
     err_release(&e);
 }
 
+/* The exit status of a child that runs `run`. */
+static int status_of_child(int (*run)(const char *path), const char *path)
+{
+    int status = -1;
+    fflush(stdout);
+    const pid_t child = fork();
+    if (child == 0)
+        _exit(run(path));
+    waitpid(child, &status, 0);
+    return WIFEXITED(status) ? WEXITSTATUS(status) : -1;
+}
+
+/* 0: refused as the second writer */
+static int write_second(const char *path)
+{
+    struct err e = ERR_INIT;
+    const enum status got = write_results(path, "two", true, true, &e);
+    const bool told = e.count == 1 && strstr(e.faults[0].message, "another run") != NULL;
+    return got == STATUS_INPUT && told ? 0 : 1;
+}
+
 /* A child of ours is the second writer: the lock belongs to a process. */
 static void second_writer(void)
 {
     char path[64];
     struct err e = ERR_INIT;
     struct outdir *d = NULL;
-    int status = -1;
     make_directory(path);
     CU_ASSERT_EQUAL_FATAL(outdir_open(&d, path, "main.json", owned, false, true, &e), STATUS_OK);
-    fflush(stdout);
-    const pid_t child = fork();
-    if (child == 0) {
-        struct outdir *second = NULL;
-        const enum status got = outdir_open(&second, path, "main.json", owned, true, true, &e);
-        const bool told = e.count == 1 && strstr(e.faults[0].message, "another run") != NULL;
-        _exit(got == STATUS_INPUT && told && second == NULL ? 0 : 1);
-    }
-    waitpid(child, &status, 0);
-    CU_ASSERT(WIFEXITED(status) && WEXITSTATUS(status) == 0);
+    CU_ASSERT_EQUAL(hidden_files(path), 0); /* nothing is made before there is a result */
+    CU_ASSERT_EQUAL_FATAL(outdir_claim(d, &e), STATUS_OK);
+    CU_ASSERT_EQUAL(status_of_child(write_second, path), 0);
     CU_ASSERT(present(path, ".terrace.lock")); /* still ours */
     outdir_free(d);
     results(path, "one", false, true, STATUS_OK);
@@ -260,15 +272,132 @@ static void second_writer(void)
     err_release(&e);
 }
 
+/* A result that appears while another run computes is not replaced without force. */
+static void finished_meanwhile(void)
+{
+    char path[64];
+    struct err e = ERR_INIT;
+    struct outdir *d = NULL;
+    make_directory(path);
+    CU_ASSERT_EQUAL_FATAL(outdir_open(&d, path, "main.json", owned, false, true, &e), STATUS_OK);
+    results(path, "one", false, true, STATUS_OK);
+    CU_ASSERT_EQUAL(outdir_claim(d, &e), STATUS_INPUT);
+    outdir_free(d);
+    CU_ASSERT(holds(path, "main.json", "one"));
+    CU_ASSERT_EQUAL(hidden_files(path), 0);
+    remove_directory(path);
+    err_release(&e);
+}
+
+/* Claims the directory often; how often another held it at the same time. */
+static int claim_often(const char *path)
+{
+    int wrong = 0;
+    char held[128];
+    path_of(held, path, "held");
+    for (int i = 0; i < 20000; i++) {
+        struct err e = ERR_INIT;
+        struct outdir *d = NULL;
+        if (outdir_open(&d, path, "main.json", owned, true, true, &e) == STATUS_OK &&
+            outdir_claim(d, &e) == STATUS_OK) {
+            const int fd = open(held, O_WRONLY | O_CREAT | O_EXCL, 0600);
+            wrong += fd < 0;
+            close(fd);
+            unlink(held);
+        }
+        outdir_free(d);
+        err_release(&e);
+    }
+    return wrong > 100 ? 100 : wrong;
+}
+
+/* The lock is removed by the one who holds it while others have it open. */
+static void many_writers(void)
+{
+    char path[64];
+    pid_t child[4];
+    make_directory(path);
+    fflush(stdout);
+    for (size_t i = 0; i < COUNT_OF(child); i++)
+        if ((child[i] = fork()) == 0)
+            _exit(claim_often(path));
+    for (size_t i = 0; i < COUNT_OF(child); i++) {
+        int status = -1;
+        waitpid(child[i], &status, 0);
+        CU_ASSERT(WIFEXITED(status) && WEXITSTATUS(status) == 0);
+    }
+    CU_ASSERT_EQUAL(hidden_files(path), 0);
+    remove_directory(path);
+}
+
+/* A commit was killed after the older result was put aside and one new file moved. */
+static void killed_in_the_commit(void)
+{
+    char path[64];
+    make_directory(path);
+    put(path, ".terrace-old.main.json", "old", 0600);
+    put(path, ".terrace-old.page.html", "old", 0600);
+    put(path, "page.html", "new", 0600);
+    put(path, "draws.csv", "new", 0600);
+    results(path, "two", false, true, STATUS_INPUT); /* finds the older result, whole again */
+    CU_ASSERT(holds(path, "main.json", "old") && holds(path, "page.html", "old"));
+    CU_ASSERT_FALSE(present(path, "draws.csv"));
+    put(path, ".terrace-old.page.html", "older", 0600); /* and after the main file was in place */
+    results(path, "two", true, true, STATUS_OK);
+    CU_ASSERT(holds(path, "main.json", "two") && holds(path, "page.html", "two"));
+    remove_directory(path);
+}
+
+/* A signal that comes while files stand half-written ends the process once they are gone. */
+static int told_to_end_while_writing(const char *path)
+{
+    struct err e = ERR_INIT;
+    struct outdir *d = NULL;
+    struct text bytes = TEXT_INIT;
+    base_watch_signals();
+    text_add(&bytes, "words");
+    outdir_open(&d, path, "main.json", owned, true, true, &e);
+    outdir_add(d, "main.json", &bytes, &e);
+    raise(SIGTERM);
+    if (base_signal_caught() != SIGTERM || outdir_commit(d, &e) == STATUS_OK)
+        return 1;
+    outdir_free(d);
+    return 2; /* not reached */
+}
+
+static int told_to_end_early(const char *path)
+{
+    struct err e = ERR_INIT;
+    struct outdir *d = NULL;
+    base_watch_signals();
+    outdir_open(&d, path, "main.json", owned, true, true, &e);
+    raise(SIGINT);
+    return 2; /* not reached */
+}
+
+static void ended_by_a_signal(void)
+{
+    char path[64], made[128];
+    make_directory(path);
+    results(path, "old", false, true, STATUS_OK);
+    path_of(made, path, "made");
+    CU_ASSERT_EQUAL(status_of_child(told_to_end_while_writing, path), 128 + SIGTERM);
+    CU_ASSERT_EQUAL(status_of_child(told_to_end_early, path), 128 + SIGINT);
+    CU_ASSERT_EQUAL(status_of_child(told_to_end_while_writing, made), 128 + SIGTERM);
+    CU_ASSERT_EQUAL(status_of_child(told_to_end_early, made), 128 + SIGINT);
+    CU_ASSERT_FALSE(present(path, "made"));
+    CU_ASSERT_EQUAL(hidden_files(path), 0);
+    CU_ASSERT(holds(path, "main.json", "old") && holds(path, "page.html", "old"));
+    remove_directory(path);
+}
+
 static void impossible_directories(void)
 {
     static const char *const impossible[] = {"", "/dev/null", "/dev/null/below",
                                              "/proc/terrace-nowhere"};
     for (size_t i = 0; i < COUNT_OF(impossible); i++) {
-        struct outdir *d = NULL;
         struct err e = ERR_INIT;
-        CU_ASSERT(outdir_open(&d, impossible[i], "main.json", owned, true, true, &e) != STATUS_OK);
-        CU_ASSERT_PTR_NULL(d);
+        CU_ASSERT(write_results(impossible[i], "words", true, true, &e) != STATUS_OK);
         CU_ASSERT_EQUAL(e.count, 1);
         err_release(&e);
     }
@@ -318,6 +447,10 @@ static const struct unit_test tests[] = {
     {"every step fails once", every_step_fails_once},
     {"abandoned results", abandoned},
     {"a second writer", second_writer},
+    {"a result that appears meanwhile", finished_meanwhile},
+    {"one writer at a time", many_writers},
+    {"a commit that was killed", killed_in_the_commit},
+    {"ended by a signal", ended_by_a_signal},
     {"impossible directories", impossible_directories},
     {"reading", reading},
     {"stems of names", stems},
