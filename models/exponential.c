@@ -5,8 +5,9 @@
 
 enum { E0, RISE, SCALE };
 
-/* d / scale is taken up to here, so that squares stay finite numbers */
-#define LARGEST_EXPONENT 300.0
+/* d / scale is taken up to here (a factor of 1e13), so that a coefficient times its column keeps
+ * its digits; a steeper curve is a jump at the highest level */
+#define LARGEST_EXPONENT 30.0
 #define SMALL 1e-5
 
 static const struct parameter parameters[] = {

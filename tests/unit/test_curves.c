@@ -57,7 +57,7 @@ static double logistic_at(double d, const double *v, double largest)
 static double exponential_at(double d, const double *v, double largest)
 {
     (void)largest;
-    return v[0] + v[1] * expm1(fmin(d / v[2], 300)); /* kept finite there */
+    return v[0] + v[1] * expm1(fmin(d / v[2], 30)); /* bounded there */
 }
 
 /* What the interface says of each curve. */
