@@ -102,13 +102,17 @@ static bool argument_rows(const struct vocabulary *v, const void *data, size_t i
         *out = cuts[i - own];
         return true;
     }
-    *out = (struct field){.key = family->args[i].key,
+    const struct prior_arg *a = &family->args[i];
+    const bool bounded = a->most > 0;
+    *out = (struct field){.key = a->key,
                           .kind = FIELD_NUMBER,
                           .required = true,
-                          .low = family->args[i].positive ? 0 : -NUMBER_LIMIT,
-                          .low_open = family->args[i].positive,
-                          .high = NUMBER_LIMIT,
-                          .help = family->args[i].help};
+                          .low = bounded       ? a->least
+                                 : a->positive ? 0
+                                               : -NUMBER_LIMIT,
+                          .low_open = !bounded && a->positive,
+                          .high = bounded ? a->most : NUMBER_LIMIT,
+                          .help = a->help};
     return true;
 }
 

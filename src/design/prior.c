@@ -202,9 +202,43 @@ static bool has_moment(const struct prior *p, double order)
     return f->moments_below(p->arg) > (p->on_variance ? order / 2 : order);
 }
 
-/* E (X - centre)^order, order 1 or 2: integral of the quantile function over (0, 1) with
- * u = 1 / (1 + exp(-pi sinh t)). */
-static double moment_about(const struct prior *p, double centre, int order)
+static double to_order(double x, int order)
+{
+    return order == 2 ? x * x : x;
+}
+
+/* At r from an end where the density falls by a power the quantile function is c r^-a (1 + o(1)).
+ * Where a moment only just exists no quadrature reaches far enough: this part is integrated in
+ * closed form, c^order / (1 - a order). c is 0 where there is no such end. */
+struct power_tail {
+    double a, c;
+};
+
+#define TAIL_AT 1e-60       /* where c is read: the power law holds there to all digits */
+#define SLOW 0.5            /* a order from which quadrature alone loses digits */
+#define NEAREST 1e-290      /* probabilities nearest to an end: of the uncut family, and */
+#define NEAREST_POWER 1e-70 /* with a power tail taken out, within what can be squared */
+
+static struct power_tail power_tail(const struct prior *p, int order, bool upper)
+{
+    const struct prior_family *f = p->family;
+    const bool cut = upper ? p->below < INFINITY : p->above > -INFINITY || !f->two_sided;
+    struct power_tail t = {0, 0};
+
+    if (cut || f->moments_below == NULL)
+        return t;
+    t.a = (p->on_variance ? 0.5 : 1.0) / f->moments_below(p->arg);
+    if (t.a * order < SLOW)
+        return (struct power_tail){0, 0};
+    t.c = (upper ? quantile_at(p, 1.0, TAIL_AT) : quantile_at(p, TAIL_AT, 1.0)) *
+          vm_exp(t.a * vm_log(TAIL_AT));
+    return t;
+}
+
+/* E (X - centre)^order, order 1 or 2, without the power tails: integral of the quantile function
+ * over (0, 1) with u = 1 / (1 + exp(-pi sinh t)); `least` is the nearest to an end. */
+static double smooth_moment(const struct prior *p, double centre, int order,
+                            const struct power_tail tail[2], double least)
 {
     const double step = 1.0 / 32, pi = 3.14159265358979323846;
     double sum = 0, weights = 0;
@@ -214,13 +248,27 @@ static double moment_about(const struct prior *p, double centre, int order)
         const double u = vm_logistic(pi * sinh), rest = vm_logistic(-pi * sinh);
         const double weight = u * rest * cosh;
 
-        if (!(u > 1e-290 && rest > 1e-290))
+        if (!(u > least && rest > least))
             continue;
-        const double x = quantile_at(p, u, rest) - centre;
-        sum += weight * (order == 2 ? x * x : x);
+        const double low = tail[0].c * vm_exp(-tail[0].a * vm_log(u));
+        const double high = tail[1].c * vm_exp(-tail[1].a * vm_log(rest));
+        sum += weight * (to_order(quantile_at(p, u, rest) - centre, order) - to_order(low, order) -
+                         to_order(high, order));
         weights += weight;
     }
     return sum / weights;
+}
+
+static double moment_about(const struct prior *p, double centre, int order)
+{
+    const struct power_tail tail[2] = {power_tail(p, order, false), power_tail(p, order, true)};
+    const bool power = tail[0].c != 0 || tail[1].c != 0;
+    double sum =
+        smooth_moment(p, centre, order, tail, power ? NEAREST_POWER : NEAREST / prior_mass(p));
+
+    for (int i = 0; i < 2 && power; i++)
+        sum += to_order(tail[i].c, order) / (1.0 - tail[i].a * order);
+    return sum;
 }
 
 static bool has_closed_moments(const struct prior *p)

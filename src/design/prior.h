@@ -16,6 +16,7 @@ struct prior_arg {
     const char *key; /* "mean", "sd", "shape", ...: names fixed by the interface */
     bool positive;   /* must be > 0 */
     const char *help;
+    double least, most; /* closed range that our arithmetic is right in; 0, 0: any number */
 };
 
 struct prior_family {
@@ -58,7 +59,7 @@ const struct prior_family *prior_family_find(const char *key);
 bool prior_is_fixed(const struct prior *p);
 bool prior_is_truncated(const struct prior *p);
 /* The mass between the cuts; below PRIOR_LEAST_MASS a cut prior is refused. */
-#define PRIOR_LEAST_MASS 1e-290
+#define PRIOR_LEAST_MASS 1e-200
 double prior_mass(const struct prior *p);
 /* After the cuts are set: fills log_mass. */
 void prior_settle(struct prior *p);

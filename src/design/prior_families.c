@@ -12,6 +12,9 @@
 #define HALF_LN_2_PI 0.91893853320467274178
 #define MEAN_HALF 0.79788456080286535588 /* sqrt(2 / pi) */
 #define SD_HALF 0.60281027144942745000   /* sqrt(1 - 2 / pi) */
+/* shapes and degrees of freedom: below, most quantiles are no numbers any more; above, digits go */
+#define LEAST_SHAPE 0.001
+#define MOST_SHAPE 1e6
 
 /* --- normal: mean, sd --- */
 
@@ -210,7 +213,8 @@ static void gamma_log_density(const double *arg, size_t n, const double *x, cons
     const double top = arg[0] * vm_log(arg[1]) - special_log_gamma(arg[0]);
 
     for (size_t i = 0; i < n; i++) {
-        const double inside = top + (arg[0] - 1.0) * log_x[i] - arg[1] * x[i];
+        const double power = arg[0] == 1.0 ? 0.0 : (arg[0] - 1.0) * log_x[i]; /* ln 0 at x = 0 */
+        const double inside = top + power - arg[1] * x[i];
         out[i] = x[i] < 0.0 ? -INFINITY : inside;
     }
 }
@@ -396,7 +400,8 @@ const struct prior_family prior_family_lognormal = {
 const struct prior_family prior_family_gamma = {
     .key = "gamma",
     .sentence = "gamma",
-    .args = {{"shape", true, "shape"}, {"rate", true, "rate; the mean is shape / rate"}},
+    .args = {{"shape", true, "shape", .least = LEAST_SHAPE, .most = MOST_SHAPE},
+             {"rate", true, "rate; the mean is shape / rate"}},
     .support_low = 0,
     .log_density = gamma_log_density,
     .cdf = gamma_cdf,
@@ -410,7 +415,7 @@ const struct prior_family prior_family_gamma = {
 const struct prior_family prior_family_inverse_gamma = {
     .key = "inverse_gamma",
     .sentence = "inverse gamma",
-    .args = {{"shape", true, "shape"},
+    .args = {{"shape", true, "shape", .least = LEAST_SHAPE, .most = MOST_SHAPE},
              {"scale", true, "scale; the mean is scale / (shape - 1) when shape is above 1"}},
     .support_low = 0,
     .log_density = inverse_gamma_log_density,
@@ -441,7 +446,7 @@ const struct prior_family prior_family_student_t = {
     .key = "student_t",
     .sentence = "Student t",
     .two_sided = true,
-    .args = {{"df", true, "degrees of freedom"},
+    .args = {{"df", true, "degrees of freedom", .least = LEAST_SHAPE, .most = MOST_SHAPE},
              {"location", false, "centre"},
              {"scale", true, "scale; the standard deviation is larger, infinite up to df 2"}},
     .support_low = -INFINITY,

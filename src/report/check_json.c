@@ -128,6 +128,13 @@ static void write_targets(struct json_writer *w, const struct check_report *r)
     json_close(w);
 }
 
+/* null where there is none, or beyond all numbers */
+static void write_quantile(struct json_writer *w, const char *key, const struct prior *p, double q)
+{
+    const double x = prior_is_fixed(p) ? NAN : prior_quantile(p, q);
+    json_key_maybe(w, key, isfinite(x) ? x : NAN);
+}
+
 static void write_priors(struct json_writer *w, const struct check_report *r)
 {
     const struct model *m = &r->d->model;
@@ -135,15 +142,14 @@ static void write_priors(struct json_writer *w, const struct check_report *r)
     json_open(w, '[');
     for (size_t i = 0; i < m->parameters; i++) {
         const struct prior *p = &m->prior[i];
-        bool known = !prior_is_fixed(p);
         struct text s = TEXT_INIT;
         say_prior(&s, p);
         json_open(w, '{');
         json_key_string(w, "name", m->parameter[i]->name);
         json_key_string(w, "sentence", text_s(&s));
-        json_key_maybe(w, "q05", known ? prior_quantile(p, 0.05) : NAN);
-        json_key_maybe(w, "q50", known ? prior_quantile(p, 0.5) : NAN);
-        json_key_maybe(w, "q95", known ? prior_quantile(p, 0.95) : NAN);
+        write_quantile(w, "q05", p, 0.05);
+        write_quantile(w, "q50", p, 0.5);
+        write_quantile(w, "q95", p, 0.95);
         json_close(w);
         text_release(&s);
     }

@@ -13,7 +13,7 @@ enum { PROBABILITY_DECIMALS = 3, TARGETS_A_TABLE = 4, SCENARIOS_A_TABLE = 4, BAN
 static void add_number(struct table *c, double x)
 {
     char s[NUMBER_CHARS];
-    table_cell(c, isnan(x) ? "–" : number_significant(s, x, 4));
+    table_cell(c, !isfinite(x) ? "–" : number_significant(s, x, 4));
 }
 
 /* At most four significant digits, no zeros at the end. */
