@@ -11,7 +11,7 @@
 #define LN_2 0.69314718055994530942
 #define HALF_LN_2_PI 0.91893853320467274178
 #define MEAN_HALF 0.79788456080286535588 /* sqrt(2 / pi) */
-#define SD_HALF 0.60281027144942745000   /* sqrt(1 - 2 / pi) */
+#define SD_HALF 0.60281027498908693428   /* sqrt(1 - 2 / pi) */
 /* shapes and degrees of freedom: below, most quantiles are no numbers any more; above, digits go */
 #define LEAST_SHAPE 0.001
 #define MOST_SHAPE 1e6
