@@ -103,15 +103,15 @@ static bool argument_rows(const struct vocabulary *v, const void *data, size_t i
         return true;
     }
     const struct prior_arg *a = &family->args[i];
-    const bool bounded = a->most > 0;
+    const bool bounded = i == 0 && family->most > 0;
     *out = (struct field){.key = a->key,
                           .kind = FIELD_NUMBER,
                           .required = true,
-                          .low = bounded       ? a->least
+                          .low = bounded       ? family->least
                                  : a->positive ? 0
                                                : -NUMBER_LIMIT,
                           .low_open = !bounded && a->positive,
-                          .high = bounded ? a->most : NUMBER_LIMIT,
+                          .high = bounded ? family->most : NUMBER_LIMIT,
                           .help = a->help};
     return true;
 }

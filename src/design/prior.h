@@ -16,13 +16,13 @@ struct prior_arg {
     const char *key; /* "mean", "sd", "shape", ...: names fixed by the interface */
     bool positive;   /* must be > 0 */
     const char *help;
-    double least, most; /* closed range that our arithmetic is right in; 0, 0: any number */
 };
 
 struct prior_family {
     const char *key;
     const char *sentence;              /* printf-free description for people, e.g. "normal" */
     struct prior_arg args[PRIOR_ARGS]; /* key NULL ends the list */
+    double least, most; /* of args[0]: where our arithmetic is right; 0, 0: as its row says */
     double support_low; /* -INFINITY or 0: lowest x with density > 0 (normal, uniform,
                            student_t: -INFINITY; uniform is checked by its min) */
     /* Normalised log density at n points; log_x may be NULL when support_low is -INFINITY. No

@@ -399,9 +399,10 @@ const struct prior_family prior_family_lognormal = {
 
 const struct prior_family prior_family_gamma = {
     .key = "gamma",
+    .least = LEAST_SHAPE,
+    .most = MOST_SHAPE,
     .sentence = "gamma",
-    .args = {{"shape", true, "shape", .least = LEAST_SHAPE, .most = MOST_SHAPE},
-             {"rate", true, "rate; the mean is shape / rate"}},
+    .args = {{"shape", true, "shape"}, {"rate", true, "rate; the mean is shape / rate"}},
     .support_low = 0,
     .log_density = gamma_log_density,
     .cdf = gamma_cdf,
@@ -414,8 +415,10 @@ const struct prior_family prior_family_gamma = {
 
 const struct prior_family prior_family_inverse_gamma = {
     .key = "inverse_gamma",
+    .least = LEAST_SHAPE,
+    .most = MOST_SHAPE,
     .sentence = "inverse gamma",
-    .args = {{"shape", true, "shape", .least = LEAST_SHAPE, .most = MOST_SHAPE},
+    .args = {{"shape", true, "shape"},
              {"scale", true, "scale; the mean is scale / (shape - 1) when shape is above 1"}},
     .support_low = 0,
     .log_density = inverse_gamma_log_density,
@@ -444,9 +447,11 @@ const struct prior_family prior_family_uniform = {
 
 const struct prior_family prior_family_student_t = {
     .key = "student_t",
+    .least = LEAST_SHAPE,
+    .most = MOST_SHAPE,
     .sentence = "Student t",
     .two_sided = true,
-    .args = {{"df", true, "degrees of freedom", .least = LEAST_SHAPE, .most = MOST_SHAPE},
+    .args = {{"df", true, "degrees of freedom"},
              {"location", false, "centre"},
              {"scale", true, "scale; the standard deviation is larger, infinite up to df 2"}},
     .support_low = -INFINITY,
