@@ -22,6 +22,10 @@
 #define PRIOR_SHARE_HEAVY 0.25
 /* A stand-in for a prior without variance: this many times the middle half. */
 #define WIDE 4.0
+/* a standard deviation beyond so many times the middle half says nothing of the middle */
+#define TAME 10.0
+/* Stand-ins beyond so many times the data's own scale would cost digits: they are drawn in. */
+#define WIDEST 1e7
 /* ends of a support are moved inward by this share, so that rounding never leaves it */
 #define INWARD 1e-12
 
@@ -144,8 +148,9 @@ static void plan_linear(struct plan *plan, size_t c, const struct prior *prior, 
     }
     const double middle = prior_mean(prior), sd = prior_sd(prior);
     const double quartiles = problem_quantile(prior, 0.75) - problem_quantile(prior, 0.25);
-    *mean = isfinite(middle) ? middle : problem_quantile(prior, 0.5);
-    *scale = isfinite(sd) && sd > 0.0 ? sd : WIDE * quartiles;
+    const bool tame = isfinite(middle) && sd > 0.0 && sd < TAME * quartiles;
+    *mean = tame ? middle : problem_quantile(prior, 0.5);
+    *scale = tame ? sd : WIDE * quartiles;
     double low, high;
     prior_support(prior, &low, &high);
     p->weighed = true;
@@ -270,12 +275,49 @@ static void plan_data(struct problem *p, const struct level_data *data)
     p->control_mean -= p->centre;
 }
 
+/* The data's own scale: level means and responses about them; a logit's is 1. */
+static double data_scale(const struct problem *p, const struct level_data *data)
+{
+    double sum = p->ss_within;
+    if (p->binary)
+        return 1.0;
+    for (size_t k = 0; k < p->levels; k++)
+        sum += data->n[k] * (data->mean[k] - p->centre) * (data->mean[k] - p->centre);
+    return p->n_total > 0.0 && sum > 0.0 ? sqrt(sum / p->n_total) : 1.0;
+}
+
+static void draw_in(double widest, double centre, double *mean, double *scale, double *own_mean,
+                    double *own_sd)
+{
+    if (!(*scale > widest))
+        return;
+    *mean = 0.0;
+    *scale = widest;
+    *own_mean = centre;
+    *own_sd = widest;
+}
+
+/* Stand-ins whose scale dwarfs the data's. Levels are centred, other coefficients are not. */
+static void draw_in_stand_ins(struct problem *p, const struct level_data *data)
+{
+    const double widest = WIDEST * data_scale(p, data);
+    for (size_t c = 0; c < COLUMNS_MAX; c++)
+        if (p->exact[c])
+            draw_in(widest, c == 0 ? p->centre : 0.0, &p->mean[c], &p->scale[c],
+                    &p->stand_in_mean[c], &p->stand_in_sd[c]);
+    if (p->exact[COLUMNS_MAX])
+        draw_in(widest, p->centre, &p->control_mean, &p->control_scale,
+                &p->stand_in_mean[COLUMNS_MAX], &p->stand_in_sd[COLUMNS_MAX]);
+}
+
 void plan_problem(struct problem *out, const struct plan *plan, const struct level_data *data,
                   double *y)
 {
     double filled = 0.0, linear = 0.0;
     *out = plan->problem;
     plan_data(out, data);
+    if (out->weighed)
+        draw_in_stand_ins(out, data);
     out->y = y;
     for (size_t k = 0; k < out->levels; k++) {
         filled += data->n[k] > 0.0 ? 1.0 : 0.0;

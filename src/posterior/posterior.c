@@ -287,8 +287,11 @@ void posterior_diagnose(const struct draws *d, int threads, struct convergence *
         const size_t i = (size_t)r;
         const double *x = i < d->parameters ? d->parameter + i * d->stride
                                             : d->link + (i - d->parameters) * d->stride;
+        const double sd = diag_sd(x, d->n, diag_mean(x, d->n));
         out[i] = (struct convergence){NAN, NAN, NAN, NAN};
-        if (diag_sd(x, d->n, diag_mean(x, d->n)) > 0.0)
+        if (!isfinite(sd)) /* draws that are no numbers never converge */
+            out[i] = (struct convergence){.rhat = 1e6, .mcse_mean = NAN};
+        else if (sd > 0.0)
             out[i] = (struct convergence){.rhat = diag_rhat(x, d->n, d->chains),
                                           .ess_bulk = diag_ess_bulk(x, d->n, d->chains),
                                           .ess_tail = diag_ess_tail(x, d->n, d->chains),

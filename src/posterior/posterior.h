@@ -42,7 +42,8 @@ struct draws {
 };
 
 /* Diagnostics of one quantity (Vehtari, Gelman, Simpson, Carpenter & Buerkner 2021, Bayesian
- * Analysis 16:667). NaN for a constant (fixed) quantity. */
+ * Analysis 16:667). NaN for a constant (fixed) quantity; R-hat 1e6 and ESS 0 where the spread
+ * of the draws is no number. */
 struct convergence {
     double rhat, ess_bulk, ess_tail, mcse_mean;
 };

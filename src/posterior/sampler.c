@@ -103,6 +103,7 @@ void sampler_start(struct sampler *s, const struct rng_key *key)
     s->sum = s->sum_squares = s->count = 0.0;
     s->longest_stay = s->steps = 0;
     s->lattice = NULL;
+    s->started = false;
 }
 
 static size_t pick_node(const struct proposal *q, double u)
@@ -411,6 +412,22 @@ static void draw_accepted(struct sampler *s, const struct draw_rows *out, size_t
     sampler_parameters(p, BLOCK, BLOCK, shape0, shape1, sd, beta, theta, out, at);
 }
 
+/* Each chain starts from the best of its first proposals, so that no draw is a chance find far out.
+ */
+static void start_chains(struct sampler *s)
+{
+    for (size_t lane = 0; lane < RNG_LANES; lane++) {
+        size_t best = lane;
+        for (size_t i = lane; i < BLOCK; i += RNG_LANES)
+            if (s->log_weight[i] > s->log_weight[best])
+                best = i;
+        s->state_weight[lane] = s->log_weight[best];
+        for (size_t r = 0; r < s->rows; r++)
+            s->state[r * RNG_LANES + lane] = s->row[r][best];
+    }
+    s->started = true;
+}
+
 void sampler_lattice(struct sampler *s, size_t points)
 {
     s->lattice = &lattices[0];
@@ -429,6 +446,8 @@ void sampler_propose(struct sampler *s)
 void sampler_block(struct sampler *s, const struct draw_rows *out, size_t at)
 {
     sampler_propose(s);
+    if (!s->started)
+        start_chains(s);
     s->p->kernel->uniforms(&s->rng, BLOCK, s->uniform_accept);
     s->p->kernel->accept(s);
     count_stays(s);
