@@ -14,11 +14,17 @@
 #include "report/table.h"
 #include "report/wrap.h"
 
-enum { DIGITS = 9 };
+enum { NINE = 9, FULL = 15 };
 
-static double difference(const struct check_figure *f)
+/* Results of optimisers carry nine digits; all else stands in full. */
+static double ours(const struct check_result *r, const struct check_figure *f)
 {
-    return f->published_text ? f->ours : fabs(f->ours - f->published);
+    return isfinite(f->ours) && r->check->nine_digits ? number_nine(f->ours) : f->ours;
+}
+
+static double difference(const struct check_result *r, const struct check_figure *f)
+{
+    return f->published_text ? f->ours : fabs(ours(r, f) - f->published);
 }
 
 static void cell(struct table *t, double x, int digits)
@@ -42,10 +48,10 @@ static struct table *table_of(const struct check_result *r)
             table_cell(t, f->published_text);
             table_cell(t, f->ours_text);
         } else {
-            cell(t, f->published, DIGITS + 3);
-            cell(t, f->ours, DIGITS + 3);
+            cell(t, f->published, r->check->nine_digits ? NINE : FULL);
+            cell(t, ours(r, f), r->check->nine_digits ? NINE : FULL);
         }
-        cell(t, difference(f), 2);
+        cell(t, difference(r, f), 2);
         cell(t, f->allowed, 2);
         table_cell(t, f->passed ? "passed" : "FAILED");
     }
@@ -73,6 +79,7 @@ void selfcheck_text(struct text *out, const struct selfcheck *s)
     evidence_line(out, "build", build_words());
     evidence_line(out, "instruction set", vecmath()->name);
     evidence_line(out, "sources, SHA-256", source_sha256());
+    evidence_line(out, "seed", "fixed for each check");
     for (size_t i = 0; i < s->count; i++) {
         const struct check_result *r = &s->result[i];
         struct table *t = table_of(r);
@@ -89,7 +96,8 @@ void selfcheck_text(struct text *out, const struct selfcheck *s)
 
 /* ---- JSON ---- */
 
-static void figure_json(struct json_writer *w, const struct check_figure *f)
+static void figure_json(struct json_writer *w, const struct check_result *r,
+                        const struct check_figure *f)
 {
     json_open_inline(w, '{');
     json_key_string(w, "value", f->what);
@@ -98,9 +106,10 @@ static void figure_json(struct json_writer *w, const struct check_figure *f)
         json_key_string(w, "ours", f->ours_text);
     } else {
         json_key_number(w, "published", f->published);
-        json_key_maybe(w, "ours", isfinite(f->ours) ? number_nine(f->ours) : NAN);
+        json_key_maybe(w, "ours", isfinite(f->ours) ? ours(r, f) : NAN);
     }
-    json_key_maybe(w, "difference", isfinite(difference(f)) ? number_nine(difference(f)) : NAN);
+    const double off = difference(r, f);
+    json_key_maybe(w, "difference", isfinite(off) ? number_nine(off) : NAN);
     json_key_number(w, "allowed", number_nine(f->allowed));
     json_key_bool(w, "passed", f->passed);
     json_close(w);
@@ -117,7 +126,7 @@ static void check_json(struct json_writer *w, const struct check_result *r)
     json_key(w, "figures");
     json_open(w, '[');
     for (size_t i = 0; i < r->count; i++)
-        figure_json(w, &r->figure[i]);
+        figure_json(w, r, &r->figure[i]);
     json_close(w);
     json_close(w);
 }
@@ -167,6 +176,7 @@ static void masthead(struct text *out, const struct selfcheck *s)
     row(t, "Build", build_words());
     row(t, "Instruction set in force", vecmath()->name);
     row(t, "Sources, SHA-256", source_sha256());
+    row(t, "Seed", "fixed for each check");
     page_table(out, t, "The same sources give the same digest, whoever builds them.");
     page_paragraph(out, NULL,
                    "Each check computes values with this program and holds them against published "

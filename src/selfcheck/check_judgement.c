@@ -35,18 +35,21 @@ static void run_ess(struct check_result *r, double nudge)
                   "R-hat of stationary chains, correlation %g", rho[i]);
     }
     for (size_t k = 0; k < N; k++) /* one chain stands apart */
-        x[k] += nudge == 0 && k % SIDE_BY_SIDE == 0 ? 3 : 0;
+        x[k] += k % SIDE_BY_SIDE == 0 ? 3 : 0;
     check_add(r, 1, diag_rhat(x, N, SIDE_BY_SIDE) > 1.05 ? 1 : 0, 0,
               "R-hat above 1.05 where one chain of eight stands apart");
     mem_free(x);
 }
 
 const struct check check_ess = {
-    "effective_draws", "Judgement",
+    "effective_draws",
+    "Judgement",
     "Autoregression of order 1: (1 - rho) / (1 + rho) effective draws a draw (Priestley 1981, "
     "Spectral Analysis and Time Series, section 5.3); definitions: Vehtari, Gelman, Simpson, "
     "Carpenter & Buerkner 2021, Bayesian Analysis 16:667",
-    "240,000 draws in 8 chains; within 10%, the spread of such estimates.", run_ess};
+    "240,000 draws in 8 chains; within 10%, the spread of such estimates.",
+    run_ess,
+    false};
 
 /* ---- a design of four levels ---- */
 
@@ -93,12 +96,14 @@ static void run_allocation(struct check_result *r, double nudge)
 }
 
 const struct check check_allocation = {
-    "next_shares", "Judgement",
+    "next_shares",
+    "Judgement",
     "Arithmetic by hand of the allocation rule (powers of probabilities: Thall & Wathen 2007, "
     "European "
     "Journal of Cancer 43:859)",
     "p = (0.10, 0.28, 0.52) with 0.10 for none, power 1, drop below 0.15, control 25%.",
-    run_allocation};
+    run_allocation,
+    false};
 
 /* ---- targets ---- */
 
@@ -118,5 +123,9 @@ static void run_targets(struct check_result *r, double nudge)
 }
 
 const struct check check_targets = {
-    "targets", "Judgement", "The definitions of the targets, by hand",
-    "Means 0, -1, -4.6, -5, lower is better: 90% of the largest gain is 4.5.", run_targets};
+    "targets",
+    "Judgement",
+    "The definitions of the targets, by hand",
+    "Means 0, -1, -4.6, -5, lower is better: 90% of the largest gain is 4.5.",
+    run_targets,
+    false};

@@ -92,13 +92,15 @@ static void run_rat42(struct check_result *r, double nudge)
 }
 
 const struct check check_rat42 = {
-    "rat42", "Likelihood fit",
+    "rat42",
+    "Likelihood fit",
     "NIST Statistical Reference Datasets, nonlinear regression, Rat42 (Ratkowsky 1983, Nonlinear "
     "Regression Modeling, pp. 61 and 88): certified values (recalled, and reproduced to 8e-10)",
     "y = b1 / (1 + exp(b2 - b3 x)) as curve logistic with E0 = 0, Emax = b1, ED50 = b2 / b3, "
     "spread = "
     "1 / b3; six significant digits.",
-    run_rat42};
+    run_rat42,
+    true};
 
 /* ---- five dose means ---- */
 
@@ -122,10 +124,13 @@ static void run_five_doses(struct check_result *r, double nudge)
 }
 
 const struct check check_five_doses = {
-    "five_dose_means", "Likelihood fit",
+    "five_dose_means",
+    "Likelihood fit",
     "Bretz, Pinheiro & Branson 2005, Biometrics 61:738: five dose means (from memory), 20 subjects "
     "each; least squares with the Emax curve",
-    "Standard errors per unit residual sd; six significant digits.", run_five_doses};
+    "Standard errors per unit residual sd; six significant digits.",
+    run_five_doses,
+    true};
 
 /* ---- ryegrass ---- */
 
@@ -152,12 +157,14 @@ static void run_ryegrass(struct check_result *r, double nudge)
 }
 
 const struct check check_ryegrass = {
-    "ryegrass", "Likelihood fit",
+    "ryegrass",
+    "Likelihood fit",
     "Inderjit, Streibig & Olofsdotter 2002, Physiologia Plantarum 114:422: root length of "
     "perennial "
     "ryegrass against ferulic acid (data from memory; the published estimates are met to 1e-5)",
     "Sigmoid Emax, falling; standard errors from the expected information; six significant digits.",
-    run_ryegrass};
+    run_ryegrass,
+    true};
 
 /* ---- beetles ---- */
 
@@ -179,10 +186,13 @@ static void run_beetles(struct check_result *r, double nudge)
 }
 
 const struct check check_beetles = {
-    "beetles", "Likelihood fit",
+    "beetles",
+    "Likelihood fit",
     "Bliss 1935, Annals of Applied Biology 22:134: beetles killed; linear logit in log dose (also "
     "Dobson, An Introduction to Generalized Linear Models)",
-    "Binomial likelihood with its coefficient; six significant digits.", run_beetles};
+    "Binomial likelihood with its coefficient; six significant digits.",
+    run_beetles,
+    true};
 
 /* ---- Nile ---- */
 
@@ -218,9 +228,12 @@ static void run_nile(struct check_result *r, double nudge)
 }
 
 const struct check check_nile = {
-    "nile", "Likelihood fit",
+    "nile",
+    "Likelihood fit",
     "Annual flow of the Nile 1871 to 1970 (Cobb 1978, Biometrika 65:243), local level model: "
     "Durbin & "
     "Koopman 2012, Time Series Analysis by State Space Methods, ch. 2; further digits by an exact "
     "diffuse filter",
-    "A random walk over 100 levels with a flat start; the digits of the book, then six.", run_nile};
+    "A random walk over 100 levels with a flat start; the digits of the book, then six.",
+    run_nile,
+    true};

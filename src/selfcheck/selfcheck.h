@@ -32,6 +32,7 @@ struct check {
     const char *source; /* author, year, title or table; "(from memory)" where recalled */
     const char *what;   /* what is computed, and why so much difference is allowed */
     void (*run)(struct check_result *r, double nudge);
+    bool nine_digits; /* results of an optimiser: 9 significant digits are shown */
 };
 
 extern const struct check *const checks[]; /* NULL-terminated, in the order of the report */

@@ -25,7 +25,7 @@ static const struct {
     {"student_t", 0.5},
     {"known_variance", 1e-9},
     {"two_binomials", 1},
-    {"two_methods", 0.2},
+    {"two_methods", 0.05},
     {"effective_draws", 0.04},
     {"next_shares", 1e-3},
     {"targets", 1},
@@ -77,8 +77,8 @@ static void run_empty(struct check_result *r, double nudge)
 
 static void verdicts(void)
 {
-    const struct check one = {"one", "g", "s", "w", run_unmoved},
-                       none = {"none", "g", "s", "w", run_empty};
+    const struct check one = {"one", "g", "s", "w", run_unmoved, false},
+                       none = {"none", "g", "s", "w", run_empty, false};
     struct check_result r;
     check_run(&r, &one, 0);
     CU_ASSERT(r.passed);
@@ -99,7 +99,7 @@ static void verdicts(void)
 /* A failing check is told as such in all three documents. */
 static void documents(void)
 {
-    const struct check one = {"one", "Group <x>", "Source & more", "What", run_unmoved};
+    const struct check one = {"one", "Group <x>", "Source & more", "What", run_unmoved, false};
     struct check_result r;
     check_run(&r, &one, 0);
     check_add(&r, 2, 3, 0.5, "two");
