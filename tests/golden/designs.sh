@@ -33,11 +33,17 @@ data() { # NAME SUBJECTS-A-LEVEL BINARY
         } }' </dev/null >"$dir/$1.csv"
 }
 
-for curve in emax sigmoid_emax ndlm independent; do
+for curve in linear log_linear quadratic emax sigmoid_emax logistic exponential ndlm independent; do
     design "$curve-continuous" $curve continuous ''
     design "$curve-binary" $curve binary ''
 done
 design ndlm_actual-continuous ndlm continuous ',"spacing":"actual"'
+priors='"theta":{"student_t":{"df":4,"location":0,"scale":2}},"slope":{"normal":{"mean":0,"sd":2,"above":-1}}'
+for type in continuous binary; do
+    design "ndlm_second-$type" ndlm $type ',"order":2'
+    design "ndlm_priors-$type" ndlm $type ",\"order\":2,\"priors\":{$priors,\"drift_variance\":{\"inverse_gamma\":{\"shape\":2,\"scale\":0.5}}}"
+    design "emax_priors-$type" emax $type ',"priors":{"Emax":{"uniform":{"min":-1,"max":8}},"ED50":{"gamma":{"shape":2,"rate":0.1,"below":60}}}'
+done
 for type in continuous binary; do
     design "sensitivity-$type" quadratic $type '' ',"sensitivity":[{"curve":"linear"},{"curve":"ndlm","order":2}]'
 done
