@@ -14,6 +14,9 @@
 #   make format          is everything in the house's format? (format-fix applies it)
 #   make lengths         functions over 100 lines, files over 500 (only reported)
 #   make lint            cppcheck and clang --analyze
+#   make valgrind        check, analyze, fit and selfcheck under valgrind
+#   make cover           lines and branches that the tests reach (gcov)
+#   make dist            build/terrace-VERSION.tar.gz, the same bytes every time
 #   make clean
 #
 # Variants, each with object files of its own: CC=clang, DEV=1 (warnings are errors, and more of
@@ -46,11 +49,14 @@ endif
 ifneq ($(filter format format-fix,$(GOALS)),)
 PACKAGES += clang-format
 endif
+ifneq ($(filter valgrind,$(GOALS)),)
+PACKAGES += valgrind
+endif
 ifneq ($(filter lint,$(GOALS)),)
 PACKAGES += clang libomp-dev cppcheck
 endif
 # These need a shell and no package.
-ifeq ($(filter-out clean floors floors-update lengths,$(GOALS)),)
+ifeq ($(filter-out clean floors floors-update lengths dist,$(GOALS)),)
 PACKAGES :=
 endif
 
@@ -123,11 +129,11 @@ BENCH_PROGRAMS := $(patsubst tests/bench/%.c,$(O)/tests/bench/%,$(wildcard tests
 FORMATTED := $(wildcard src/*/*.[ch] models/*.[ch] tests/*/*.[ch])
 
 .PHONY: all programs demo test golden-redo bench install headers floors floors-update format format-fix \
-    lengths lint clean FORCE
+    lengths lint valgrind cover dist clean FORCE
 .SECONDARY:
 .DELETE_ON_ERROR:
 
-all: $(BUILD)/terrace $(BUILD)/libterrace.a
+all: $(BUILD)/terrace $(BUILD)/libterrace.a $(BUILD)/terrace.1 $(BUILD)/terrace.bash
 programs: all $(TEST_PROGRAMS) $(BENCH_PROGRAMS)
 
 # Objects are made anew when the flags change; what stands in build/ when the variant does.
@@ -189,6 +195,15 @@ $(O)/tests/bench/%: $(O)/tests/bench/%.o $(O)/libterrace.a
 
 -include $(wildcard $(O)/*/*.d $(O)/*/*/*.d)
 
+# The manual page and the completion, from the table of commands.
+$(O)/tests/manual/write_manual: $(O)/tests/manual/write_manual.o $(O)/libterrace.a
+	@echo "  LINK  $@"
+	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -o $@ $^ $(LDLIBS)
+$(BUILD)/terrace.1: $(O)/tests/manual/write_manual $(BUILD)/.variant
+	@$< page > $@.new && mv $@.new $@
+$(BUILD)/terrace.bash: $(O)/tests/manual/write_manual $(BUILD)/.variant
+	@$< completion > $@.new && mv $@.new $@
+
 # ---- work ------------------------------------------------------------------------------------
 
 # Scripts find the program under test in TERRACE.
@@ -218,6 +233,9 @@ install: all
 	install -d $(DESTDIR)$(PREFIX)/bin $(DESTDIR)$(PREFIX)/lib
 	install -m 755 $(BUILD)/terrace $(DESTDIR)$(PREFIX)/bin/terrace
 	install -m 644 $(BUILD)/libterrace.a $(DESTDIR)$(PREFIX)/lib/libterrace.a
+	install -d $(DESTDIR)$(PREFIX)/share/man/man1 $(DESTDIR)$(PREFIX)/share/bash-completion/completions
+	install -m 644 $(BUILD)/terrace.1 $(DESTDIR)$(PREFIX)/share/man/man1/terrace.1
+	install -m 644 $(BUILD)/terrace.bash $(DESTDIR)$(PREFIX)/share/bash-completion/completions/terrace
 	@set -e; for h in $(HEADERS); do f=$(DESTDIR)$(PREFIX)/include/terrace/$${h#src/}; \
 	    install -d "$${f%/*}"; install -m 644 $$h "$$f"; done
 
@@ -236,6 +254,14 @@ lengths:
 lint:
 	@FLAGS="$(CPPFLAGS)" FIXED="$(FIXED)" ISA_SOURCES="$(ISA_PRESENT)" \
 	    sh tests/workshop/lint.sh $(PLAIN) $(MAIN)
+valgrind: all
+	@bash tests/workshop/valgrind.sh $(BUILD)/terrace
+# Tests with counters compiled in (FAST), then what they reached.
+cover:
+	+@$(MAKE) --no-print-directory test FAST=1 BUILD=$(BUILD)/cover CFLAGS="-O0 -g --coverage" LDFLAGS=--coverage
+	@bash tests/workshop/cover.sh $(BUILD)/cover/obj
+dist:
+	@bash tests/workshop/dist.sh $(BUILD)
 clean:
 	rm -rf $(BUILD)
 
