@@ -10,7 +10,7 @@ name=terrace-$version
 mkdir -p "$out"
 list=$(mktemp)
 trap 'rm -f "$list"' EXIT
-if git rev-parse --is-inside-work-tree >/dev/null 2>&1; then
+if [ -e .git ]; then
     git ls-files -z | sort -z >"$list"
 else
     find . -type f ! -path './build/*' -print0 | sed -z 's|^\./||' | sort -z >"$list"
