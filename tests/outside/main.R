@@ -6,6 +6,11 @@ for (file in c("priors.R", "cases.R", "figures.R", "program.R", "base_r.R", "jag
 
 say <- function(...) cat(sprintf(...), "\n", sep = "")
 
+give_up <- function(..., status = 1L) {
+    say(...)
+    quit(status = status)
+}
+
 # --- options: --only PATTERN, names of samplers
 
 read_options <- function(words) {
@@ -17,8 +22,7 @@ read_options <- function(words) {
     }
     bad <- setdiff(words, options$samplers)
     if (length(bad)) {
-        say("no such sampler or option: %s (base-r, jags, stan, --only PATTERN)", bad[1])
-        quit(status = 2L)
+        give_up("no such sampler or option: %s (base-r, jags, stan, --only PATTERN)", bad[1], status = 2L)
     }
     if (length(words)) options$samplers <- words
     options
@@ -33,7 +37,7 @@ installed <- function(names) {
     if ("base-r" %in% names) samplers[["base-r"]] <- run_base_r
     if ("jags" %in% names) samplers$jags <- run_jags
     if ("stan" %in% names) {
-        model <- compile_stan()
+        model <- tryCatch(compile_stan(), error = function(e) give_up("not ok - stan: %s", conditionMessage(e)))
         samplers$stan <- function(case, dir) run_stan(case, dir, model)
     }
     say("# %s", paste(c(R.version.string, if ("jags" %in% names) jags_version(),
@@ -109,8 +113,9 @@ summary_lines <- function(results, samplers) {
 main <- function() {
     start <- proc.time()[["elapsed"]]
     options <- read_options(commandArgs(trailingOnly = TRUE))
-    samplers <- installed(options$samplers)
     cases <- Filter(function(case) grepl(options$only, case$name), all_cases())
+    if (length(cases) == 0) give_up("no case is named like %s", options$only, status = 2L)
+    samplers <- installed(options$samplers)
     jobs <- as.integer(Sys.getenv("JOBS", "2"))
     results <- parallel::mclapply(cases, run_case, samplers, mc.cores = jobs, mc.preschedule = FALSE)
     broken <- Filter(function(r) !is.list(r), results)

@@ -10,6 +10,7 @@ stan_missing <- function() {
     if (!quietly(requireNamespace("rstan", quietly = TRUE))) 
         return("the R package rstan is not installed (Debian: r-cran-rstan)")
     if (!nzchar(Sys.which("g++"))) return("rstan needs the compiler g++")
+    if (!nzchar(boost())) return("rstan needs Boost (Debian: libboost-dev)")
     NULL
 }
 
@@ -21,10 +22,14 @@ quietly <- function(expression) {
     suppressWarnings(withCallingHandlers(expression, message = muffle))
 }
 
-# Debian keeps Boost where its own packages are.
+# The R package BH, or where Debian keeps Boost.
+boost <- function() {
+    of_package <- system.file("include", package = "BH")
+    if (nzchar(of_package)) of_package else if (dir.exists("/usr/include/boost")) "/usr/include" else ""
+}
+
 compile_stan <- function() {
-    if (!nzchar(system.file("include", package = "BH")) && dir.exists("/usr/include/boost"))
-        rstan::rstan_options(boost_lib = "/usr/include")
+    rstan::rstan_options(boost_lib = boost())
     quietly(rstan::stan_model("tests/outside/model.stan", save_dso = TRUE))
 }
 
