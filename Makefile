@@ -17,6 +17,7 @@
 #   make valgrind        check, analyze, fit and selfcheck under valgrind
 #   make cover           lines and branches that the tests reach (gcov)
 #   make dist            build/terrace-VERSION.tar.gz, the same bytes every time
+#   make fuzz            fuzz targets of the readers, FUZZ_SECONDS (60) each, with sanitizers
 #   make clean
 #
 # Variants, each with object files of its own: CC=clang, DEV=1 (warnings are errors, and more of
@@ -51,6 +52,9 @@ PACKAGES += clang-format
 endif
 ifneq ($(filter valgrind,$(GOALS)),)
 PACKAGES += valgrind
+endif
+ifneq ($(filter fuzz,$(GOALS)),)
+PACKAGES += clang libomp-dev libclang-rt-14-dev
 endif
 ifneq ($(filter lint,$(GOALS)),)
 PACKAGES += clang libomp-dev cppcheck
@@ -125,11 +129,13 @@ HEADERS := $(wildcard src/*/*.h models/*.h)
 TEST_SOURCES := $(wildcard tests/unit/test_*.c)
 TEST_HELPERS := $(filter-out $(TEST_SOURCES),$(wildcard tests/unit/*.c))
 TEST_PROGRAMS := $(TEST_SOURCES:tests/unit/%.c=$(O)/tests/unit/%)
+FUZZ_TARGETS := $(patsubst tests/fuzz/fuzz_%.c,%,$(wildcard tests/fuzz/fuzz_*.c))
+TEST_PROGRAMS += $(FUZZ_TARGETS:%=$(O)/tests/fuzz/replay_%)
 BENCH_PROGRAMS := $(patsubst tests/bench/%.c,$(O)/tests/bench/%,$(wildcard tests/bench/*.c))
 FORMATTED := $(wildcard src/*/*.[ch] models/*.[ch] tests/*/*.[ch])
 
 .PHONY: all programs demo test golden-redo bench install headers floors floors-update format format-fix \
-    lengths lint valgrind cover dist clean FORCE
+    lengths lint valgrind cover dist fuzz fuzz-run clean FORCE
 .SECONDARY:
 .DELETE_ON_ERROR:
 
@@ -189,6 +195,14 @@ $(O)/tests/unit/test_%: $(O)/tests/unit/test_%.o $(TEST_HELPERS:%.c=$(O)/%.o) $(
 	@echo "  LINK  $@"
 	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -o $@ $^ $(CUNIT_LIBS) $(LDLIBS)
 $(O)/tests/unit/%.o: CPPFLAGS += -Itests/unit
+# A fuzz target with libFuzzer's main, and with our own, which reads the committed corpus.
+FUZZ_SHARED := $(O)/tests/fuzz/fuzz.o $(O)/tests/unit/schema_takes.o
+$(O)/tests/fuzz/fuzz_%: $(O)/tests/fuzz/fuzz_%.o $(FUZZ_SHARED) $(O)/libterrace.a
+	@echo "  LINK  $@"
+	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -fsanitize=fuzzer -o $@ $^ $(CUNIT_LIBS) $(LDLIBS)
+$(O)/tests/fuzz/replay_%: $(O)/tests/fuzz/fuzz_%.o tests/fuzz/replay.c $(FUZZ_SHARED) $(O)/libterrace.a
+	@echo "  LINK  $@"
+	$(Q)$(CC) $(CPPFLAGS) $(FLAGS) $(LDFLAGS) -DCORPUS='"tests/fuzz/corpus/$*"' -o $@ $^ $(CUNIT_LIBS) $(LDLIBS)
 $(O)/tests/bench/%: $(O)/tests/bench/%.o $(O)/libterrace.a
 	@echo "  LINK  $@"
 	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -o $@ $^ $(LDLIBS)
@@ -209,6 +223,12 @@ $(BUILD)/terrace.bash: $(O)/tests/manual/write_manual $(BUILD)/.variant
 # Scripts find the program under test in TERRACE.
 test: all $(TEST_PROGRAMS)
 	@TERRACE="$(abspath $(BUILD)/terrace)" CC="$(CC)" TEST_PROGRAMS="$(TEST_PROGRAMS)" tests/run
+
+FUZZ := $(MAKE) --no-print-directory CC=clang SAN=address,undefined,fuzzer-no-link CFLAGS='-O1 -g'
+fuzz:
+	+@$(FUZZ) fuzz-run
+fuzz-run: $(FUZZ_TARGETS:%=$(O)/tests/fuzz/fuzz_%)
+	@sh tests/workshop/fuzz.sh $(BUILD)/fuzz $^
 
 # After a change that is meant to change results: the commit says why.
 golden-redo: all

@@ -97,19 +97,15 @@ static enum status read_table(struct data *data, const struct design *d,
     return STATUS_OK;
 }
 
-enum status data_read(struct data **out, const char *path, const struct design *d, const char *cut,
-                      struct err *e)
+enum status data_parse(struct data **out, const char *bytes, size_t length, const char *file,
+                       const struct design *d, const char *cut, struct err *e)
 {
-    struct text bytes = TEXT_INIT;
     struct csv_table table = CSV_TABLE_INIT;
     struct data *data = mem_new(1, sizeof *data);
-    data->file = mem_text(path);
+    data->file = mem_text(file);
+    sha256_hex(data->sha256, bytes, length);
     *out = NULL;
-    enum status status = file_read(path, &bytes, e);
-    if (status == STATUS_OK) {
-        sha256_hex(data->sha256, text_s(&bytes), bytes.length);
-        status = csv_read(text_s(&bytes), bytes.length, path, &table, e);
-    }
+    enum status status = csv_read(bytes, length, file, &table, e);
     if (status == STATUS_OK)
         status = read_table(data, d, &table, cut, e);
     if (status == STATUS_OK)
@@ -117,6 +113,17 @@ enum status data_read(struct data **out, const char *path, const struct design *
     else
         data_free(data);
     csv_table_release(&table);
+    return status;
+}
+
+enum status data_read(struct data **out, const char *path, const struct design *d, const char *cut,
+                      struct err *e)
+{
+    struct text bytes = TEXT_INIT;
+    enum status status = file_read(path, &bytes, e);
+    *out = NULL;
+    if (status == STATUS_OK)
+        status = data_parse(out, text_s(&bytes), bytes.length, path, d, cut, e);
     text_release(&bytes);
     return status;
 }

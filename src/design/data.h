@@ -55,6 +55,9 @@ struct data {
  * with its line. On STATUS_OK *out is owned by the caller. */
 enum status data_read(struct data **out, const char *path, const struct design *d, const char *cut,
                       struct err *e);
+/* The same of bytes in hand; `file` is for messages. */
+enum status data_parse(struct data **out, const char *bytes, size_t length, const char *file,
+                       const struct design *d, const char *cut, struct err *e);
 void data_free(struct data *data);
 
 /* Which analysis this is: `asked` > 0: --analysis K (1 to the number planned); 0: the number of

@@ -227,31 +227,37 @@ static void read_table(struct table_reader *r, const char *endpoint)
     sum_up(r);
 }
 
-enum status fit_table_read(struct fit_table **out, const char *path, const char *endpoint,
-                           struct err *e)
+enum status fit_table_parse(struct fit_table **out, const char *bytes, size_t length,
+                            const char *file, const char *endpoint, struct err *e)
 {
     struct err own = ERR_INIT;
-    struct text bytes = TEXT_INIT;
     struct csv_table csv = CSV_TABLE_INIT;
     struct fit_table *t = mem_new(1, sizeof *t);
-    struct table_reader r = {.t = t, .csv = &csv, .file = path, .e = &own};
-    *out = NULL;
-    if (file_read(path, &bytes, &own) == STATUS_OK) {
-        t->data.file = mem_text(path);
-        sha256_hex(t->data.sha256, text_s(&bytes), bytes.length);
-        csv_read(text_s(&bytes), bytes.length, path, &csv, &own);
-        if (csv.columns > 0)
-            read_table(&r, endpoint);
-    }
+    struct table_reader r = {.t = t, .csv = &csv, .file = file, .e = &own};
+    t->data.file = mem_text(file);
+    sha256_hex(t->data.sha256, bytes, length);
+    csv_read(bytes, length, file, &csv, &own);
+    if (csv.columns > 0)
+        read_table(&r, endpoint);
     const enum status status = own.status;
     err_move(e, &own);
     mem_free(r.entry);
     csv_table_release(&csv);
-    text_release(&bytes);
-    if (status == STATUS_OK)
-        *out = t;
-    else
+    *out = status == STATUS_OK ? t : NULL;
+    if (status != STATUS_OK)
         fit_table_free(t);
+    return status;
+}
+
+enum status fit_table_read(struct fit_table **out, const char *path, const char *endpoint,
+                           struct err *e)
+{
+    struct text bytes = TEXT_INIT;
+    enum status status = file_read(path, &bytes, e);
+    *out = NULL;
+    if (status == STATUS_OK)
+        status = fit_table_parse(out, text_s(&bytes), bytes.length, path, endpoint, e);
+    text_release(&bytes);
     return status;
 }
 

@@ -19,6 +19,9 @@ struct fit_table {
  * NULL (binary where there is a column `events`). Owned by the caller on STATUS_OK. */
 enum status fit_table_read(struct fit_table **out, const char *path, const char *endpoint,
                            struct err *e);
+/* The same of bytes in hand; `file` is for messages. */
+enum status fit_table_parse(struct fit_table **out, const char *bytes, size_t length,
+                            const char *file, const char *endpoint, struct err *e);
 void fit_table_free(struct fit_table *t);
 
 /* The scales of default priors, from the data (continuous): C the mean of the level means, A the
