@@ -129,6 +129,8 @@ HEADERS := $(wildcard src/*/*.h models/*.h)
 TEST_SOURCES := $(wildcard tests/unit/test_*.c)
 TEST_HELPERS := $(filter-out $(TEST_SOURCES),$(wildcard tests/unit/*.c))
 TEST_PROGRAMS := $(TEST_SOURCES:tests/unit/%.c=$(O)/tests/unit/%)
+# The program with one failing call (tests/inject). Sanitizers have an allocator of their own.
+INJECTED := $(if $(SAN),,$(O)/tests/inject/terrace)
 FUZZ_TARGETS := $(patsubst tests/fuzz/fuzz_%.c,%,$(wildcard tests/fuzz/fuzz_*.c))
 TEST_PROGRAMS += $(FUZZ_TARGETS:%=$(O)/tests/fuzz/replay_%)
 BENCH_PROGRAMS := $(patsubst tests/bench/%.c,$(O)/tests/bench/%,$(wildcard tests/bench/*.c))
@@ -140,7 +142,7 @@ FORMATTED := $(wildcard src/*/*.[ch] models/*.[ch] tests/*/*.[ch])
 .DELETE_ON_ERROR:
 
 all: $(BUILD)/terrace $(BUILD)/libterrace.a $(BUILD)/terrace.1 $(BUILD)/terrace.bash
-programs: all $(TEST_PROGRAMS) $(BENCH_PROGRAMS)
+programs: all $(TEST_PROGRAMS) $(BENCH_PROGRAMS) $(INJECTED)
 
 # Objects are made anew when the flags change; what stands in build/ when the variant does.
 # $(call stamp,text): rewrites the target only when the text is another one.
@@ -203,6 +205,13 @@ $(O)/tests/fuzz/fuzz_%: $(O)/tests/fuzz/fuzz_%.o $(FUZZ_SHARED) $(O)/libterrace.
 $(O)/tests/fuzz/replay_%: $(O)/tests/fuzz/fuzz_%.o tests/fuzz/replay.c $(FUZZ_SHARED) $(O)/libterrace.a
 	@echo "  LINK  $@"
 	$(Q)$(CC) $(CPPFLAGS) $(FLAGS) $(LDFLAGS) -DCORPUS='"tests/fuzz/corpus/$*"' -o $@ $^ $(CUNIT_LIBS) $(LDLIBS)
+# --wrap hands these calls of the program's own objects to inject.c.
+INJECT_WRAPPED := base_init _exit open openat read write fsync close renameat linkat unlinkat mkdir rmdir \
+    stat fstat fstatat fcntl fwrite fflush
+$(O)/tests/inject/inject.o: FLAGS += -Wno-missing-prototypes -Wno-pedantic -fno-builtin
+$(O)/tests/inject/terrace: $(O)/$(MAIN:.c=.o) $(O)/tests/inject/inject.o $(O)/libterrace.a
+	@echo "  LINK  $@"
+	$(Q)$(CC) $(FLAGS) $(LDFLAGS) $(INJECT_WRAPPED:%=-Wl,--wrap=%) -o $@ $^ $(LDLIBS)
 $(O)/tests/bench/%: $(O)/tests/bench/%.o $(O)/libterrace.a
 	@echo "  LINK  $@"
 	$(Q)$(CC) $(FLAGS) $(LDFLAGS) -o $@ $^ $(LDLIBS)
@@ -221,8 +230,8 @@ $(BUILD)/terrace.bash: $(O)/tests/manual/write_manual $(BUILD)/.variant
 # ---- work ------------------------------------------------------------------------------------
 
 # Scripts find the program under test in TERRACE.
-test: all $(TEST_PROGRAMS)
-	@TERRACE="$(abspath $(BUILD)/terrace)" CC="$(CC)" TEST_PROGRAMS="$(TEST_PROGRAMS)" tests/run
+test: all $(TEST_PROGRAMS) $(INJECTED)
+	@TERRACE="$(abspath $(BUILD)/terrace)" INJECTED="$(abspath $(INJECTED))" CC="$(CC)" TEST_PROGRAMS="$(TEST_PROGRAMS)" tests/run
 
 FUZZ := $(MAKE) --no-print-directory CC=clang SAN=address,undefined,fuzzer-no-link CFLAGS='-O1 -g'
 fuzz:

@@ -4,6 +4,7 @@
 
 #include <cjson/cJSON.h>
 #include <gsl/gsl_errno.h>
+#include <openssl/crypto.h>
 #include <signal.h>
 #include <stdatomic.h>
 #include <stdio.h>
@@ -15,6 +16,25 @@
 static void *cjson_new(size_t size)
 {
     return mem_grow(NULL, 1, size);
+}
+
+/* libcrypto does not survive a refused allocation everywhere: it asks at our door, too. */
+static void *crypto_new(size_t size, const char *file, int line)
+{
+    (void)file, (void)line;
+    return mem_grow(NULL, 1, size);
+}
+
+static void *crypto_grow(void *old, size_t size, const char *file, int line)
+{
+    (void)file, (void)line;
+    return mem_grow(old, 1, size);
+}
+
+static void crypto_free(void *p, const char *file, int line)
+{
+    (void)file, (void)line;
+    mem_free(p);
 }
 
 /* GSL's callers look at statuses; what it cannot allocate it hands on as NULL, unseen. */
@@ -31,6 +51,7 @@ void base_init(void)
 
     gsl_set_error_handler(gsl_failed);
     cJSON_InitHooks(&hooks);
+    CRYPTO_set_mem_functions(crypto_new, crypto_grow, crypto_free);
 }
 
 void base_bug(const char *file, int line, const char *what)

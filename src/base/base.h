@@ -15,8 +15,8 @@
 /* A broken promise between two rooms of this program: our bug, never the user's. Aborts. */
 #define BUG(what) base_bug(__FILE__, __LINE__, (what))
 
-/* Switches off GSL's aborting error handler. Call once at the start of a program (or of a test)
- * that uses libterrace.a, before any other function. */
+/* Gives the libraries our door to malloc and switches off GSL's aborting error handler. Call once
+ * at the start of a program (or of a test) that uses libterrace.a, before any other function. */
 void base_init(void);
 
 _Noreturn void base_bug(const char *file, int line, const char *what);

@@ -233,12 +233,15 @@ static enum status take_lock(struct outdir *d, struct err *e)
         if (locked && lock_is_found(d))
             return STATUS_OK;
         const int cause = errno;
+        const bool taken = !locked && (cause == EACCES || cause == EAGAIN);
+        if (!locked && !taken)
+            unlinkat(d->directory, LOCK_NAME, 0); /* nobody can lock here */
         close(d->lock);
         d->lock = -1;
         if (locked)
             continue;
         errno = cause;
-        if (errno != EACCES && errno != EAGAIN)
+        if (!taken)
             return err_system(e, d->path, "lock the directory");
         return err_add(e, STATUS_INPUT, d->path, 0, NULL,
                        "another run is writing to this directory; name another with --out");
@@ -398,6 +401,15 @@ static enum status withdraw(struct outdir *d, struct err *e)
     return STATUS_SYSTEM;
 }
 
+static void unlock(struct outdir *d)
+{
+    if (d->lock >= 0) {
+        unlinkat(d->directory, LOCK_NAME, 0); /* while it is held: see lock_is_found */
+        close(d->lock);
+    }
+    d->lock = -1;
+}
+
 enum status outdir_commit(struct outdir *d, struct err *e)
 {
     const enum status status = outdir_claim(d, e);
@@ -411,6 +423,7 @@ enum status outdir_commit(struct outdir *d, struct err *e)
     for (size_t i = 0; i < d->count; i++)
         if (d->file[i].put_aside)
             unlinkat(d->directory, d->file[i].old, 0);
+    unlock(d);
     return STATUS_OK;
 }
 
@@ -455,10 +468,7 @@ void outdir_free(struct outdir *d)
         return;
     const bool claimed = d->claimed;
     abandon(d);
-    if (d->lock >= 0) {
-        unlinkat(d->directory, LOCK_NAME, 0); /* while it is held: see lock_is_found */
-        close(d->lock);
-    }
+    unlock(d);
     if (d->directory >= 0)
         close(d->directory);
     if (d->made_from != SIZE_MAX && !d->committed)

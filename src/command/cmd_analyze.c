@@ -51,7 +51,7 @@ struct run {
     bool *closed;
     char *path;
     struct outdir *dir;
-    struct text json, page, draws, tables;
+    struct text json, page, draws, tables, notes;
 };
 
 static void run_release(struct run *r)
@@ -69,6 +69,7 @@ static void run_release(struct run *r)
     text_release(&r->page);
     text_release(&r->draws);
     text_release(&r->tables);
+    text_release(&r->notes);
 }
 
 /* Without a usable design the data can only be read as a table; its faults are still told. */
@@ -201,21 +202,13 @@ static enum status put_documents(struct run *r, const struct options *o, struct 
     return status == STATUS_OK ? outdir_commit(r->dir, e) : status;
 }
 
-static void tell(const struct run *r, const struct options *o)
+/* What is told at the end, made before the results are put into place: nothing may fail then. */
+static void prepare_notes(struct run *r)
 {
-    if (options_has(o, "quiet")) {
-        return;
-    }
-    struct text line = TEXT_INIT;
     for (size_t i = 0; i < r->data->warnings; i++) {
-        text_clear(&line);
-        text_addf(&line, "warning: %s", r->data->warning[i]);
-        output_note(text_s(&line));
+        text_addf(&r->notes, "warning: %s\n", r->data->warning[i]);
     }
-    text_clear(&line);
-    text_addf(&line, "Report: %s/report.html", r->path);
-    output_note(text_s(&line));
-    text_release(&line);
+    text_addf(&r->notes, "Report: %s/report.html", r->path);
 }
 
 static void tell_progress(const struct run *r, const struct terminal *t)
@@ -240,11 +233,14 @@ static enum status run_all(struct run *r, const struct options *o, const struct 
         return status;
     }
     write_documents(r, o);
+    prepare_notes(r);
     enum status written = put_documents(r, o, e);
     if (written != STATUS_OK) {
         return written;
     }
-    tell(r, o);
+    if (!options_has(o, "quiet")) {
+        output_note(text_s(&r->notes));
+    }
     if (status == STATUS_DISTRUSTED && e->count == 0) {
         err_add(e, status, NULL, 0, NULL,
                 "the computation cannot be trusted: the results in %s are not to be used", r->path);

@@ -43,7 +43,7 @@ struct run {
     const char **fix; /* borrowed words */
     char *path;
     struct outdir *dir;
-    struct text json, page, tables;
+    struct text json, page, tables, notes;
 };
 
 static void run_release(struct run *r)
@@ -56,7 +56,7 @@ static void run_release(struct run *r)
     fit_table_free(r->table);
     mem_free(r->fix);
     mem_free(r->path);
-    struct text *const texts[] = {&r->model, &r->json, &r->page, &r->tables};
+    struct text *const texts[] = {&r->model, &r->json, &r->page, &r->tables, &r->notes};
     for (size_t i = 0; i < sizeof texts / sizeof *texts; i++)
         text_release(texts[i]);
 }
@@ -155,15 +155,13 @@ static enum status run_all(struct run *r, const struct options *o, struct err *e
     if (status != STATUS_OK && status != STATUS_DISTRUSTED)
         return status;
     write_documents(r);
+    /* made before the results are put into place: nothing may fail then */
+    text_addf(&r->notes, "Report: %s/report.html", r->path);
     const enum status written = put_documents(r, o, e);
     if (written != STATUS_OK)
         return written;
-    if (!options_has(o, "quiet")) {
-        struct text line = TEXT_INIT;
-        text_addf(&line, "Report: %s/report.html", r->path);
-        output_note(text_s(&line));
-        text_release(&line);
-    }
+    if (!options_has(o, "quiet"))
+        output_note(text_s(&r->notes));
     if (status == STATUS_DISTRUSTED && e->count == 0)
         err_add(e, status, NULL, 0, NULL,
                 "the computation cannot be trusted: the results in %s are not to be used", r->path);
