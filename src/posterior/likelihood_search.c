@@ -9,10 +9,10 @@
 #include "posterior/likelihood_search.h"
 
 #include <math.h>
-#include <nlopt.h>
 #include <string.h>
 
 #include "base/mem.h"
+#include "posterior/climber.h"
 
 /* Shape numbers are sought this far out in their default prior; nodes a dim; starts. */
 #define SEARCH_TAIL 1e-9
@@ -324,22 +324,20 @@ static size_t scan(struct search *s, double best[STARTS][SHAPES_MAX])
 
 static double climb(struct search *s, double *c)
 {
-    double value = -INFINITY, step[SHAPES_MAX];
-    nlopt_opt opt = nlopt_create(NLOPT_LN_NELDERMEAD, (unsigned)s->dims);
-    if (!opt)
-        return value;
+    double step[SHAPES_MAX];
     for (size_t d = 0; d < s->dims; d++)
         step[d] = (s->high[d] - s->low[d]) / NODES;
-    nlopt_set_max_objective(opt, objective, s);
-    nlopt_set_lower_bounds(opt, s->low);
-    nlopt_set_upper_bounds(opt, s->high);
-    nlopt_set_initial_step(opt, step);
-    nlopt_set_ftol_rel(opt, 1e-14);
-    nlopt_set_xtol_rel(opt, 1e-10);
-    nlopt_set_maxeval(opt, 600);
-    nlopt_optimize(opt, c, &value);
-    nlopt_destroy(opt);
-    return value;
+    const struct climber climber = {.algorithm = NLOPT_LN_NELDERMEAD,
+                                    .dims = (unsigned)s->dims,
+                                    .function = objective,
+                                    .data = s,
+                                    .low = s->low,
+                                    .high = s->high,
+                                    .step = step,
+                                    .value_tolerance = 1e-14,
+                                    .place_tolerance = 1e-10,
+                                    .most = 600};
+    return climber_run(&climber, c);
 }
 
 /* The global climb: leaves the shape numbers and the linear part at their best. */
@@ -403,18 +401,16 @@ static double best_on_face(struct face *f)
             best = c;
         }
     }
-    nlopt_opt opt = nlopt_create(NLOPT_LN_NELDERMEAD, 1);
-    if (!opt)
-        return top;
-    nlopt_set_max_objective(opt, face_objective, f);
-    nlopt_set_lower_bounds(opt, &low);
-    nlopt_set_upper_bounds(opt, &high);
-    nlopt_set_initial_step(opt, &step);
-    nlopt_set_xtol_rel(opt, 1e-6);
-    nlopt_set_maxeval(opt, 60);
-    nlopt_optimize(opt, &best, &value);
-    nlopt_destroy(opt);
-    return fmax(top, value);
+    const struct climber climber = {.algorithm = NLOPT_LN_NELDERMEAD,
+                                    .dims = 1,
+                                    .function = face_objective,
+                                    .data = f,
+                                    .low = &low,
+                                    .high = &high,
+                                    .step = &step,
+                                    .place_tolerance = 1e-6,
+                                    .most = 60};
+    return fmax(top, climber_run(&climber, &best));
 }
 
 double search_best_end(const struct search *s, size_t *dim, bool *high)

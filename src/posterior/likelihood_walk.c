@@ -12,9 +12,9 @@
 #include <gsl/gsl_blas.h>
 #include <gsl/gsl_linalg.h>
 #include <math.h>
-#include <nlopt.h>
 
 #include "base/base.h"
+#include "posterior/climber.h"
 #include "posterior/likelihood_parts.h"
 
 #define LN_2_PI 1.83787706640934548356
@@ -259,18 +259,17 @@ static double maximise(struct walk *w, bool *at_low, bool *at_high, bool *flat)
         }
     }
     *flat = top - bottom < FLAT;
-    nlopt_opt opt = nlopt_create(NLOPT_LN_SBPLX, 1);
-    if (opt) {
-        const double step = (high - low) / SCAN;
-        nlopt_set_max_objective(opt, objective, w);
-        nlopt_set_lower_bounds(opt, &low);
-        nlopt_set_upper_bounds(opt, &high);
-        nlopt_set_initial_step(opt, &step);
-        nlopt_set_xtol_rel(opt, 1e-9);
-        nlopt_set_maxeval(opt, 400);
-        nlopt_optimize(opt, &best, &top);
-        nlopt_destroy(opt);
-    }
+    const double step = (high - low) / SCAN;
+    const struct climber climber = {.algorithm = NLOPT_LN_SBPLX,
+                                    .dims = 1,
+                                    .function = objective,
+                                    .data = w,
+                                    .low = &low,
+                                    .high = &high,
+                                    .step = &step,
+                                    .place_tolerance = 1e-9,
+                                    .most = 400};
+    climber_run(&climber, &best);
     *at_low = best < low + 5;
     *at_high = best > high - 5;
     return *at_low || *at_high ? best : polish(w, best);

@@ -41,7 +41,7 @@ static bool is_counted(const void *caller)
     Dl_info who;
     const char *file = dladdr(caller, &who) != 0 && who.dli_fname ? who.dli_fname : "";
     return !strstr(file, "libgomp") && !strstr(file, "ld-linux") &&
-           (!caller_wanted || strstr(file, caller_wanted));
+           (!caller_wanted || !*caller_wanted || strstr(file, caller_wanted));
 }
 
 static bool refused(const void *caller)

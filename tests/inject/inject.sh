@@ -4,7 +4,7 @@
 # a message, and the directory as it was; or with status 0 and the whole result, where the
 # call did not matter. INJECTED names the program of inject.c.
 #   INJECT_ALL=1   every allocation instead of a sample (hours for selfcheck)
-#   INJECT_ONLY=NAME   one command
+#   INJECT_ONLY=NAME   one command; only so selfcheck
 room=inject
 . "$(dirname "$0")/../cli/lib.sh"
 INJECTED=${INJECTED:-$root/build/obj/gcc-plain/tests/inject/terrace}
@@ -12,7 +12,7 @@ if [ ! -x "$INJECTED" ]; then
     echo "skip - inject: one failing call # no such program in this build (sanitizers have an allocator of their own)"
     exit 0
 fi
-export INJECT INJECT_ERRNO INJECT_REPORT=$work/report
+export INJECT INJECT_ERRNO INJECT_CALLER= INJECT_REPORT=$work/report
 faults=0
 
 hidden() { find out -name '.terrace*' 2>/dev/null | grep -q .; }
@@ -33,6 +33,7 @@ one() {
     [ "$failed_call" = nothing ] || injected=$((injected + 1))
     case $status in
     0)
+        [ -z "$INJECT_CALLER" ] || wrong "a refused allocation of $INJECT_CALLER passed unseen"
         if [ "$failed_call" = unlinkat ] && hidden; then rm -f out/.terrace*; fi
         diff -r out reference >/dev/null || wrong "status 0, and not the whole result"
         ;;
@@ -62,7 +63,8 @@ numbers() {
         seq 1 "$allocations"
     else
         { seq 1 10; seq $((allocations - 9)) "$allocations"
-          seq 11 $(((allocations - 20) / sample + 1)) "$allocations"; } | sort -nu
+          seq 11 $((allocations > 20 ? (allocations - 20) / sample + 1 : 1)) "$allocations"; } |
+            awk -v most="$allocations" '$1 >= 1 && $1 <= most' | sort -nu
     fi
 }
 allocation() {
@@ -97,8 +99,16 @@ each() {
     try "$name: a failed call on files" call
     [ -z "${INJECT_TELL:-}" ] || cat told
 }
+from_nlopt() { INJECT_CALLER=libnlopt allocation; }
+from_gsl() { INJECT_CALLER=libgsl allocation; }
 each check 60 check "$files/trial.json"
 each analyze 60 analyze "$files/trial.json" "$files/trial.csv" --draws
 each fit 40 fit "$root/data_examples/tables/itch_by_dose.csv" --curve emax
-[ -n "${FAST:-}" ] || each selfcheck 10 selfcheck
+if [ -z "${INJECT_ONLY:-}" ]; then
+    command=(fit "$root/data_examples/tables/itch_by_dose.csv" --curve emax)
+    sample=40
+    try "fit: an allocation refused to GSL" from_gsl
+    try "fit: an allocation refused to NLopt" from_nlopt
+fi
+[ "${INJECT_ONLY:-}" != selfcheck ] || each selfcheck 10 selfcheck # takes minutes: .ci/run
 exit $failed
