@@ -30,7 +30,7 @@ endif
 BUILD ?= build
 PREFIX ?= /usr/local
 GOALS := $(or $(MAKECMDGOALS),all)
-export FAST
+export FAST FUZZ_SECONDS
 
 # ---- packages, by their Debian names ---------------------------------------------------------
 

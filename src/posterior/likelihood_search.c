@@ -180,7 +180,7 @@ double search_profile(struct search *s)
 
 static void put_shapes(struct search *s, const double *c)
 {
-    for (size_t d = 0; d < s->dims; d++)
+    for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++)
         s->shape[s->shape_of[d]] = search_is_log(s, d) ? exp(c[d]) : c[d];
 }
 

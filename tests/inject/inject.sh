@@ -7,7 +7,7 @@
 #   INJECT_ONLY=NAME   one command; only so selfcheck
 room=inject
 . "$(dirname "$0")/../cli/lib.sh"
-INJECTED=${INJECTED:-$root/build/obj/gcc-plain/tests/inject/terrace}
+INJECTED=${INJECTED-$root/build/obj/gcc-plain/tests/inject/terrace}
 if [ ! -x "$INJECTED" ]; then
     echo "skip - inject: one failing call # no such program in this build (sanitizers have an allocator of their own)"
     exit 0
