@@ -14,7 +14,7 @@
 #define KEEP 9.0
 /* an outermost node of equal probability stands for its interval up to this share of it */
 #define OUTER 0.05
-enum { PASSES = 6, ROUNDS = 6, PRIOR_POINTS = 16, NEWTON_STEPS = 5 };
+enum { PASSES = 6, ROUNDS = 6, PRIOR_POINTS = 16 };
 
 struct proposal_work {
     struct points pt;
@@ -210,50 +210,6 @@ static void weigh_by_prior(const struct problem *p, struct proposal_work *w)
                 w->weight[i] = high + vm_log(vm_exp(a - high) + vm_exp(b - high));
         }
     }
-}
-
-static void start_pseudo(const struct problem *p, size_t n, double *y, double *w)
-{
-    for (size_t k = 0; k < p->levels; k++) {
-        const double size = p->n[k], events = p->events[k];
-        const double rate = (events + 0.5) / (size + 1.0);
-        for (size_t i = 0; i < n; i++) {
-            y[k * n + i] = size > 0.0 ? vm_logit(rate) : 0.0;
-            w[k * n + i] = size * rate * (1.0 - rate);
-        }
-    }
-}
-
-/* The proposal is wider where the likelihood has no peak. */
-static void widen_pseudo(const struct problem *p, size_t n, double *w)
-{
-    for (size_t k = 0; k < p->levels; k++)
-        if (p->n[k] > 0.0 && (p->events[k] == 0.0 || p->events[k] == p->n[k]))
-            for (size_t i = 0; i < n; i++)
-                w[k * n + i] *= 0.5;
-}
-
-static void pseudo_mean(const struct problem *p, struct points *pt, double *theta, double *normal,
-                        double *beta)
-{
-    memset(normal, 0, problem_normal_rows(p) * pt->n * sizeof *normal);
-    density_at(p, pt);
-    pt->same_shapes = true;
-    p->marginal->draw(p, pt->n, pt->x, pt->factor, normal, theta, beta);
-}
-
-void proposal_pseudo(const struct problem *p, struct points *pt, double *y, double *w,
-                     double *theta, double *normal, double *beta)
-{
-    start_pseudo(p, pt->n, y, w);
-    pt->y = y;
-    pt->w = w;
-    for (int step = 0; step < NEWTON_STEPS; step++) {
-        pseudo_mean(p, pt, theta, normal, beta);
-        p->marginal->pseudo(p, pt->n, theta, y, w);
-    }
-    widen_pseudo(p, pt->n, w);
-    pseudo_mean(p, pt, theta, normal, beta);
 }
 
 static void weigh_binary(const struct problem *p, struct proposal_work *w)

@@ -8,7 +8,7 @@
 #include "base/mem.h"
 #include "base/vecmath.h"
 
-enum { N = RNG_LANES, BURN_IN = 200, STEP_OUT = 10, SHRINK = 200 };
+enum { N = RNG_LANES, BURN_IN = 200, STEP_OUT = 10, SHRINK = 200, MOVES_WEIGHED = 5 };
 
 struct slice {
     struct problem p;
@@ -221,7 +221,8 @@ static void sweep(struct slice *s)
         update_coordinate(s, s->pt.coord[d], s->width[d]);
     if (s->p.sd_free)
         update_coordinate(s, s->pt.v, s->width_v);
-    if (problem_draws_first(&s->p))
+    /* ratios of priors make the normals' target less Gaussian: more of their moves a sweep */
+    for (int i = 0; problem_draws_first(&s->p) && i < (s->p.weighed ? MOVES_WEIGHED : 1); i++)
         update_normals(s);
 }
 

@@ -132,6 +132,15 @@ void add_condition(struct text *out, const struct analysis_report *r, const stru
               number_shortest(s, c->threshold));
 }
 
+/* None of the draws, or all: three standard errors are what the draws know of the rest. */
+static int decimals_of_never(double mcse)
+{
+    int decimals = 0;
+    for (double unit = 1; decimals < 5 && unit / 10 >= 3 * mcse; unit /= 10)
+        decimals++;
+    return decimals;
+}
+
 struct digits digits_condition(const struct condition *c, const struct condition_result *x)
 {
     int decimals = number_decimals_for(x->mcse, 3);
@@ -139,6 +148,8 @@ struct digits digits_condition(const struct condition *c, const struct condition
     const int apart = distance > 0 ? number_decimals_for(distance, 3) : 3;
     if (apart > decimals)
         decimals = apart;
+    if (x->value <= 0 || x->value >= 1)
+        decimals = decimals_of_never(x->mcse);
     return (struct digits){decimals < 3 ? 3 : decimals > 5 ? 5 : decimals, 0};
 }
 

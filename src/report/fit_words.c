@@ -92,6 +92,9 @@ void words_likelihood(struct text *out, const struct analysis *a)
     text_add(out, " and AIC ");
     add_digits(out, f->aic, 6);
     text_add(out, ". It feeds no probability and no decision.");
+    if (a->model && a->model->curve->kind == CURVE_WALK)
+        text_add(out, " The likelihood of a walk is marginal, with a flat first level: it does not "
+                      "compare with that of other curves.");
 }
 
 void words_lack_of_fit(struct text *out, const struct analysis *a)

@@ -67,8 +67,10 @@ static void model_row(struct table *t, const struct analysis_report *r, size_t i
     const bool shown = likelihood_is_shown(a);
     model_cell(t, r, i);
     probability_cell(t, a->diagnostics.lack_of_fit_p, (struct digits){3, 0});
-    number_cell(t, shown ? a->likelihood.log_likelihood : NAN, (struct digits){2, 0});
-    number_cell(t, shown ? a->likelihood.aic : NAN, (struct digits){2, 0});
+    /* a walk's likelihood is marginal and does not compare with that of other curves */
+    const bool compares = shown && a->model->curve->kind != CURVE_WALK;
+    number_cell(t, compares ? a->likelihood.log_likelihood : NAN, (struct digits){2, 0});
+    number_cell(t, compares ? a->likelihood.aic : NAN, (struct digits){2, 0});
     number_cell(t, a->diagnostics.max_rhat, (struct digits){3, 0});
     number_cell(t, a->diagnostics.min_ess_bulk, (struct digits){0, 0});
     table_cell(t, a->failure ? "not fitted" : a->diagnostics.trusted ? "yes" : "no");
