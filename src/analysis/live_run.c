@@ -52,7 +52,8 @@ static bool note_convergence(struct live_run *x, const struct draws *draws)
         g->min_ess_bulk = least(g->min_ess_bulk, c->ess_bulk);
         g->min_ess_tail = least(g->min_ess_tail, c->ess_tail);
     }
-    return !(g->max_rhat > RHAT_MOST || g->min_ess_bulk < ESS_LEAST || g->min_ess_tail < ESS_LEAST);
+    return !posterior_is_lost(x->p) &&
+           !(g->max_rhat > RHAT_MOST || g->min_ess_bulk < ESS_LEAST || g->min_ess_tail < ESS_LEAST);
 }
 
 /* ---- judging ---- */

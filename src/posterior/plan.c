@@ -20,8 +20,9 @@
 /* Proposals from the prior keep all of it within reach; heavy tails need more of them. */
 #define PRIOR_SHARE (1.0 / 64.0)
 #define PRIOR_SHARE_HEAVY 0.25
-/* A stand-in for a prior without variance: this many times the middle half. */
-#define WIDE 4.0
+/* Six standard deviations of a stand-in span the prior between these tails, so that heavy ones stay
+ * within reach. */
+#define FAR_TAIL 5e-4
 /* a standard deviation beyond so many times the middle half says nothing of the middle */
 #define TAME 10.0
 /* Stand-ins beyond so many times the data's own scale would cost digits: they are drawn in. */
@@ -148,9 +149,11 @@ static void plan_linear(struct plan *plan, size_t c, const struct prior *prior, 
     }
     const double middle = prior_mean(prior), sd = prior_sd(prior);
     const double quartiles = problem_quantile(prior, 0.75) - problem_quantile(prior, 0.25);
+    const double reach =
+        (problem_quantile(prior, 1.0 - FAR_TAIL) - problem_quantile(prior, FAR_TAIL)) / 6.0;
     const bool tame = isfinite(middle) && sd > 0.0 && sd < TAME * quartiles;
     *mean = tame ? middle : problem_quantile(prior, 0.5);
-    *scale = tame ? sd : WIDE * quartiles;
+    *scale = tame && sd > reach ? sd : reach;
     double low, high;
     prior_support(prior, &low, &high);
     p->weighed = true;

@@ -201,6 +201,11 @@ void posterior_use_slice(struct posterior *p)
     slice_begin(p, 0);
 }
 
+bool posterior_is_lost(const struct posterior *p)
+{
+    return p->use_slice && slice_is_lost(p->slice);
+}
+
 bool posterior_is_slice(const struct posterior *p)
 {
     return p->use_slice;
@@ -276,7 +281,7 @@ void posterior_simulated(struct posterior *p, size_t draws, bool *doubtful, bool
         return;
     posterior_use_slice(p);
     posterior_extend(p, draws);
-    *distrusted = least_ess(p) < ESS_LEAST;
+    *distrusted = posterior_is_lost(p) || least_ess(p) < ESS_LEAST;
 }
 
 void posterior_diagnose(const struct draws *d, int threads, struct convergence *out)

@@ -70,6 +70,8 @@ void posterior_extend(struct posterior *p, size_t total);
 /* Starts again with collapsed slice sampling; posterior_extend then extends that run. */
 void posterior_use_slice(struct posterior *p);
 bool posterior_is_slice(const struct posterior *p);
+/* Slice sampling found no place with mass for some chain: its draws are not to be trusted. */
+bool posterior_is_lost(const struct posterior *p);
 
 /* The simulated fit (methods, section 2): `draws` draws; doubtful ones get up to 7 more batches,
  * then the slice sampler; *doubtful and *distrusted tell. */

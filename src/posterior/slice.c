@@ -8,7 +8,14 @@
 #include "base/mem.h"
 #include "base/vecmath.h"
 
-enum { N = RNG_LANES, BURN_IN = 200, STEP_OUT = 10, SHRINK = 200, MOVES_WEIGHED = 5 };
+enum {
+    N = RNG_LANES,
+    BURN_IN = 200,
+    STEP_OUT = 10,
+    SHRINK = 200,
+    MOVES_WEIGHED = 5,
+    ATTEMPTS = 4000
+};
 
 struct slice {
     struct problem p;
@@ -237,6 +244,41 @@ static void start_pseudo(struct slice *s)
     s->pt.w = s->w;
 }
 
+static bool is_possible(double value)
+{
+    return value > -INFINITY;
+}
+
+bool slice_is_lost(const struct slice *s)
+{
+    for (size_t i = 0; i < N; i++)
+        if (!is_possible(s->current[i]))
+            return true;
+    return false;
+}
+
+/* Lanes that start where the prior has no mass get other normals, ever further out, until they are
+ * inside. */
+static void find_support(struct slice *s)
+{
+    const size_t rows = problem_normal_rows(&s->p);
+    double value[N];
+    for (int attempt = 0; attempt < ATTEMPTS && slice_is_lost(s); attempt++) {
+        const double reach = (double)(1 + attempt % 12);
+        s->p.kernel->normals(&s->rng, (rows + 1) / 2 * 2 * N, s->nu);
+        for (size_t r = 0; r < rows * N; r++)
+            s->trial[r] = s->nu[r] * reach;
+        evaluate(s, s->trial, value);
+        for (size_t i = 0; i < N; i++) {
+            if (is_possible(s->current[i]) || !is_possible(value[i]))
+                continue;
+            s->current[i] = value[i];
+            for (size_t r = 0; r < rows; r++)
+                s->eps[r * N + i] = s->trial[r * N + i];
+        }
+    }
+}
+
 void slice_start(struct slice *s, const struct problem *p, const struct proposal *q,
                  const struct rng_key *key)
 {
@@ -259,6 +301,7 @@ void slice_start(struct slice *s, const struct problem *p, const struct proposal
     for (size_t i = 0; p->sd_free && i < N; i++)
         s->pt.v[i] = q->mode_v;
     evaluate(s, s->eps, s->current);
+    find_support(s);
     for (int i = 0; i < BURN_IN; i++)
         sweep(s);
 }

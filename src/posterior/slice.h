@@ -17,6 +17,8 @@ void slice_free(struct slice *s);
 /* Starts from the proposal's nodes, then 200 sweeps are thrown away. `p` with data. */
 void slice_start(struct slice *s, const struct problem *p, const struct proposal *q,
                  const struct rng_key *key);
+/* Whether some chain stands where the posterior has no mass: its draws are worth nothing. */
+bool slice_is_lost(const struct slice *s);
 /* Eight draws (one a chain) into [at, at + 8). */
 void slice_sweep(struct slice *s, const struct draw_rows *out, size_t at);
 

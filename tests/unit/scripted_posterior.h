@@ -101,6 +101,12 @@ void posterior_use_slice(struct posterior *p)
     p->slice = true;
 }
 
+bool posterior_is_lost(const struct posterior *p)
+{
+    (void)p;
+    return false;
+}
+
 bool posterior_is_slice(const struct posterior *p)
 {
     return p->slice;
