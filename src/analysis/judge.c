@@ -86,7 +86,7 @@ bool judge_is_grouped(const struct judgement *j)
 static double error_by_slices(const struct judgement *j, const double *x, size_t n, double mean)
 {
     enum { SLICES = 16 };
-    const size_t points = j->draws.points;
+    const size_t points = j->draws.points > 0 ? j->draws.points : 1;
     double squares = 0;
     for (size_t s = 0; s < SLICES; s++) {
         const size_t first = s * points / SLICES, end = (s + 1) * points / SLICES;
@@ -94,7 +94,8 @@ static double error_by_slices(const struct judgement *j, const double *x, size_t
         for (size_t row = 0; row < n; row += points)
             for (size_t i = first; i < end; i++)
                 sum += x[row + i];
-        const double off = sum / (double)((end - first) * (n / points)) - mean;
+        const size_t count = (end - first) * (n / points);
+        const double off = count > 0 ? sum / (double)count - mean : 0;
         squares += off * off;
     }
     return sqrt(squares / (SLICES * (SLICES - 1)));

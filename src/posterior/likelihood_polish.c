@@ -58,7 +58,7 @@ void search_jacobian(const struct search *s, gsl_matrix *J, double *theta)
     for (size_t f = 0; f < s->frees; f++)
         for (size_t i = 0; i < levels; i++)
             gsl_matrix_set(J, i, f, gsl_matrix_get(x, i, s->free[f]));
-    for (size_t d = 0; d < s->dims; d++) {
+    for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++) {
         shape_derivative(s, d, slope);
         for (size_t i = 0; i < levels; i++)
             gsl_matrix_set(J, i, s->frees + d, slope[i]);
@@ -70,7 +70,7 @@ static void move(struct search *s, const struct search *from, const double *step
 {
     for (size_t f = 0; f < s->frees; f++)
         s->linear[s->free[f]] = from->linear[s->free[f]] + share * step[f];
-    for (size_t d = 0; d < s->dims; d++) {
+    for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++) {
         double *shape = &s->shape[s->shape_of[d]];
         const double was = from->shape[s->shape_of[d]];
         *shape = was + share * step[s->frees + d];
@@ -96,7 +96,7 @@ void search_residuals(const struct search *s, const double *theta, double *r, do
 /* Coordinates: the logarithm, or the number in units. */
 static void read_coordinates(const struct search *s, double *c)
 {
-    for (size_t d = 0; d < s->dims; d++) {
+    for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++) {
         const double x = s->shape[s->shape_of[d]];
         c[d] = search_is_log(s, d) ? log(x) : x / unit_of(s, d);
     }
@@ -107,7 +107,7 @@ static double profile_at(struct search *s, const double *c, double *slope)
 {
     const struct likelihood_data *data = &s->q->x;
     double theta[LEVELS_MAX], moved[LEVELS_MAX];
-    for (size_t d = 0; d < s->dims; d++)
+    for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++)
         s->shape[s->shape_of[d]] = search_is_log(s, d) ? exp(c[d]) : c[d] * unit_of(s, d);
     const double value = search_profile(s);
     if (!slope)
@@ -116,7 +116,7 @@ static double profile_at(struct search *s, const double *c, double *slope)
     search_columns(s->q, s->shape, x);
     search_theta(s, x, theta);
     gsl_matrix_free(x);
-    for (size_t d = 0; d < s->dims; d++) {
+    for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++) {
         shape_derivative(s, d, moved);
         slope[d] = 0;
         for (size_t i = 0; i < data->levels; i++)
@@ -131,14 +131,14 @@ static double profile_at(struct search *s, const double *c, double *slope)
 static bool newton_step(struct search *s, const double *c, double *step)
 {
     double g[SHAPES_MAX] = {0, 0}, H[SHAPES_MAX][SHAPES_MAX] = {{0, 0}, {0, 0}};
-    for (size_t d = 0; d < s->dims; d++) {
+    for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++) {
         double up[SHAPES_MAX] = {c[0], c[1]}, down[SHAPES_MAX] = {c[0], c[1]};
         double g_up[SHAPES_MAX] = {0, 0}, g_down[SHAPES_MAX] = {0, 0};
         up[d] += BEND;
         down[d] -= BEND;
         (void)profile_at(s, up, g_up);
         (void)profile_at(s, down, g_down);
-        for (size_t e = 0; e < s->dims; e++)
+        for (size_t e = 0; e < s->dims && e < SHAPES_MAX; e++)
             H[d][e] = (g_down[e] - g_up[e]) / (2 * BEND);
     }
     (void)profile_at(s, c, g);
@@ -160,7 +160,7 @@ static void climb_profile(struct search *s)
     for (int k = 0; k < NEWTON_STEPS && newton_step(s, c, step); k++) {
         double share = 1, next = -INFINITY;
         for (; share > 1e-4; share *= 0.5) {
-            for (size_t d = 0; d < s->dims; d++)
+            for (size_t d = 0; d < s->dims && d < SHAPES_MAX; d++)
                 to[d] = c[d] + share * step[d];
             next = profile_at(s, to, NULL);
             if (next >= value - 1e-13 * fabs(value))
@@ -210,7 +210,7 @@ static double move_length(const struct search *s, const gsl_matrix *J, const dou
 /* One step, halved until the fit is no worse; *length before halving. False: no step helps. */
 static bool gauss_newton(struct search *s, gsl_matrix *J, double *length)
 {
-    double theta[LEVELS_MAX], r[LEVELS_MAX], w[LEVELS_MAX], step[MEANS_MAX];
+    double theta[LEVELS_MAX], r[LEVELS_MAX], w[LEVELS_MAX] = {0}, step[MEANS_MAX] = {0};
     const struct search before = *s;
     const double value = search_value(s);
     search_jacobian(s, J, theta);

@@ -22,7 +22,8 @@
 #define PRIOR_SHARE_HEAVY 0.25
 /* Six standard deviations of a stand-in span the prior between these tails, so that heavy ones stay
  * within reach. */
-#define FAR_TAIL 5e-4
+#define FAR_TAIL 2.5e-3
+#define FARTHER_TAIL 5e-4 /* without a variance */
 /* a standard deviation beyond so many times the middle half says nothing of the middle */
 #define TAME 10.0
 /* Stand-ins beyond so many times the data's own scale would cost digits: they are drawn in. */
@@ -149,9 +150,10 @@ static void plan_linear(struct plan *plan, size_t c, const struct prior *prior, 
     }
     const double middle = prior_mean(prior), sd = prior_sd(prior);
     const double quartiles = problem_quantile(prior, 0.75) - problem_quantile(prior, 0.25);
-    const double reach =
-        (problem_quantile(prior, 1.0 - FAR_TAIL) - problem_quantile(prior, FAR_TAIL)) / 6.0;
     const bool tame = isfinite(middle) && sd > 0.0 && sd < TAME * quartiles;
+    const double tail = tame ? FAR_TAIL : FARTHER_TAIL;
+    const double reach =
+        (problem_quantile(prior, 1.0 - tail) - problem_quantile(prior, tail)) / 6.0;
     *mean = tame ? middle : problem_quantile(prior, 0.5);
     *scale = tame && sd > reach ? sd : reach;
     double low, high;
